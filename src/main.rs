@@ -1,0 +1,3 @@
+//! The program: hands everything to the library.
+
+fn main() {}
