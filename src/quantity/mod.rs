@@ -20,7 +20,7 @@ mod uncertain;
 pub use engineering::{Prefix, Resolution, engineering, engineering_in};
 pub use parse::{number, parse};
 pub use range::Span;
-pub use refusal::{Refusal, RefusalKind};
+pub use refusal::{Refusal, RefusalKind, harmless};
 pub use tolerance::Tolerance;
 pub use uncertain::Uncertain;
 

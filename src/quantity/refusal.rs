@@ -109,7 +109,7 @@ impl std::error::Error for Refusal {}
 
 /// Returns the text with control characters (escape sequences among them) and direction marks shown as `\u{…}`, and cut
 /// to a length that fits a message.
-fn harmless(text: &str) -> String {
+pub fn harmless(text: &str) -> String {
     const LONGEST: usize = 40;
     let mut shown = String::new();
     for (n_chars, character) in text.chars().enumerate() {
