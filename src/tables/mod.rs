@@ -1,8 +1,117 @@
 //! The facts: what stands in `data/`, parsed once into typed rows, every row with its published source.
+//!
+//! A table is one file; [`TABLES`] holds all of them. Code that uses a fact takes it from there, so that a new code letter
+//! is a row and no code. [`rows`] lists every fact in words, [`check`] reads one file and says what is wrong with it.
 
+mod codes;
 pub mod document;
+mod facts;
 mod family;
+mod ranking;
+mod read;
+mod values;
 mod without_bias;
+mod words;
 
+pub use codes::{
+    Multiplier, Parts, Share, Standing, ToleranceLetter, ToleranceWord, VoltageCode, VoltageLetter,
+};
+pub use facts::{FamilyFacts, FamilyRow, LossLimit, family_facts};
 pub use family::{Dielectric, Family, Group};
+pub use ranking::{
+    Evidence, Factors, KINDS, Kind, Ranking, SeriesRow, SeriesShares, ToleranceShares,
+};
+pub use read::{TableError, TableRow};
+pub use values::{RatedVoltages, Series, ValueSeries};
 pub use without_bias::peak_without_bias;
+pub use words::{
+    ClimateFigure, ClimatePlace, FamilyWord, Place, PointLetter, SafetyWord, UnitWord, VoltageKind,
+    VoltageWord,
+};
+
+use read::{RawRow, Table, read_rows};
+use std::sync::LazyLock;
+
+/// Every table, parsed.
+pub static TABLES: LazyLock<Tables> = LazyLock::new(|| {
+    let read = Tables::read();
+    read.expect("every table of data/ is read by the tests")
+});
+
+macro_rules! tables {
+    ($($field:ident: $raw:ty => $typed:ty, $file:literal, $doc:literal;)*) => {
+        /// Every table, parsed; made only by [`TABLES`].
+        pub struct Tables {
+            $($field: Table<$typed>,)*
+            /// What makes one reading more probable than another.
+            pub ranking: Ranking,
+            facts: Vec<FamilyRow>,
+        }
+
+        impl Tables {
+            fn read() -> Result<Self, TableError> {
+                $(let $field = read_rows::<$raw>($file, include_str!(concat!("../../data/", $file)))?;)*
+                let mut tables = Self {
+                    ranking: Ranking::read(RANKING, include_str!("../../data/ranking.toml"))?,
+                    facts: Vec::new(),
+                    $($field,)*
+                };
+                let rows: Vec<FamilyRow> = tables.families().copied().collect();
+                tables.facts = facts::all_facts(&rows);
+                Ok(tables)
+            }
+
+            $(
+                #[doc = $doc]
+                pub fn $field(&self) -> impl Iterator<Item = &$typed> {
+                    self.$field.iter()
+                }
+            )*
+
+            fn listing(&self) -> Vec<TableRow> {
+                let mut rows = Vec::new();
+                $(rows.extend(self.$field.listing());)*
+                rows.extend(self.ranking.listing());
+                rows
+            }
+        }
+
+        /// Reads one table from the text given, by the name of its file in `data/`, and lists its rows; `None` where no
+        /// table has that name.
+        pub fn check(file: &str, text: &str) -> Option<Result<Vec<TableRow>, TableError>> {
+            match file {
+                $($file => Some(listed::<$raw>(file, text)),)*
+                RANKING => Some(Ranking::read(file, text).map(|ranking| ranking.listing())),
+                _ => None,
+            }
+        }
+    };
+}
+
+const RANKING: &str = "ranking.toml";
+
+tables! {
+    tolerance_letters: codes::RawToleranceLetter => ToleranceLetter, "tolerance-letters.toml", "Returns the tolerance letters.";
+    tolerance_words: codes::RawToleranceWord => ToleranceWord, "tolerance-words.toml", "Returns the words for a tolerance.";
+    voltage_codes: codes::RawVoltageCode => VoltageCode, "voltage-codes.toml", "Returns the letters of the voltage code.";
+    voltage_letters: codes::RawVoltageLetter => VoltageLetter, "voltage-letters.toml", "Returns the single voltage letters.";
+    voltage_words: words::RawVoltageWord => VoltageWord, "voltage-words.toml", "Returns the words for a voltage.";
+    rated_voltages: values::RawRatedVoltages => RatedVoltages, "rated-voltages.toml", "Returns the usual rated voltages.";
+    value_series: values::RawValueSeries => ValueSeries, "preferred-values.toml", "Returns the series of preferred values.";
+    multipliers: codes::RawMultiplier => Multiplier, "multipliers.toml", "Returns the multiplier digits.";
+    unit_words: words::RawUnitWord => UnitWord, "unit-words.toml", "Returns the words for a unit of capacitance.";
+    point_letters: words::RawPointLetter => PointLetter, "point-letters.toml", "Returns the letters that stand for the decimal point.";
+    family_words: words::RawFamilyWord => FamilyWord, "family-words.toml", "Returns the words for families and characteristics.";
+    safety_words: words::RawSafetyWord => SafetyWord, "safety-classes.toml", "Returns the classes of interference suppression.";
+    climate_figures: words::RawClimateFigure => ClimateFigure, "climate.toml", "Returns the figures of climatic categories.";
+    families: facts::RawFamilyRow => FamilyRow, "families.toml", "Returns the members of families, and the groups without named ones.";
+}
+
+/// Lists every row of every table in words with its source, table by table: for the code reference and its look-up.
+pub fn rows() -> Vec<TableRow> {
+    TABLES.listing()
+}
+
+fn listed<R: RawRow>(file: &str, text: &str) -> Result<Vec<TableRow>, TableError> {
+    read_rows::<R>(file, text).map(|table| table.listing())
+}

@@ -1,3 +1,4 @@
 //! The integration tests, one binary: a module a subject.
 
 mod balance;
+mod tables;

@@ -1,0 +1,364 @@
+//! Words, signs and letters that stand beside figures on a part.
+
+use super::Family;
+use super::codes::{Share, keyed, quantity};
+use super::read::RawRow;
+use crate::quantity::{Farad, Quantity, Resolution, Volt, engineering};
+use serde::Deserialize;
+use std::fmt;
+
+/// A word behind a number that makes it a capacitance.
+#[derive(Clone, Debug, PartialEq)]
+pub struct UnitWord {
+    /// The word.
+    pub word: String,
+    /// The power of ten of the unit in farad.
+    pub exponent: i8,
+    /// The row of the ranking table.
+    pub notation: String,
+    /// How often the word means this, 0 to 1.
+    pub share: f64,
+}
+
+#[derive(Deserialize)]
+#[serde(deny_unknown_fields)]
+pub(super) struct RawUnitWord {
+    word: String,
+    exponent: i8,
+    notation: String,
+    share: Option<f64>,
+    source: Option<String>,
+}
+
+impl RawRow for RawUnitWord {
+    type Typed = UnitWord;
+    fn key(&self) -> String {
+        keyed(&self.word, self.share)
+    }
+    fn source(&self) -> Option<&str> {
+        self.source.as_deref()
+    }
+    fn typed(self) -> Result<UnitWord, String> {
+        Ok(UnitWord {
+            word: some_text(self.word)?,
+            exponent: exponent(self.exponent)?,
+            notation: self.notation,
+            share: Share::read(self.share, None)?.usual,
+        })
+    }
+}
+
+impl fmt::Display for UnitWord {
+    /// Writes "mfd: 1 µF".
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        write!(f, "{}: {}", self.word, unit(self.exponent))
+    }
+}
+
+/// A letter that stands for the decimal point and names the unit.
+#[derive(Clone, Debug, PartialEq)]
+pub struct PointLetter {
+    /// The letter.
+    pub letter: char,
+    /// Where it may stand.
+    pub place: Place,
+    /// The power of ten of the unit in farad.
+    pub exponent: i8,
+    /// The row of the ranking table.
+    pub notation: String,
+    /// How often the letter means this, 0 to 1.
+    pub share: f64,
+}
+
+/// Where a letter may stand for the decimal point.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, Deserialize)]
+#[serde(rename_all = "lowercase")]
+pub enum Place {
+    /// Before the figures or between them.
+    #[default]
+    Any,
+    /// Only before them.
+    Leading,
+}
+
+#[derive(Deserialize)]
+#[serde(deny_unknown_fields)]
+pub(super) struct RawPointLetter {
+    letter: char,
+    place: Option<Place>,
+    exponent: i8,
+    notation: String,
+    share: Option<f64>,
+    source: Option<String>,
+}
+
+impl RawRow for RawPointLetter {
+    type Typed = PointLetter;
+    fn key(&self) -> String {
+        keyed(&self.letter.to_string(), self.share)
+    }
+    fn source(&self) -> Option<&str> {
+        self.source.as_deref()
+    }
+    fn typed(self) -> Result<PointLetter, String> {
+        Ok(PointLetter {
+            letter: self.letter,
+            place: self.place.unwrap_or_default(),
+            exponent: exponent(self.exponent)?,
+            notation: self.notation,
+            share: Share::read(self.share, None)?.usual,
+        })
+    }
+}
+
+impl fmt::Display for PointLetter {
+    /// Writes "n for the point, as in 4n7 or n47: 1 nF".
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        let letter = self.letter;
+        match self.place {
+            Place::Any => write!(
+                f,
+                "{letter} for the point, as in 4{letter}7 or {letter}47: "
+            )?,
+            Place::Leading => write!(f, "{letter} for the point, as in {letter}5: ")?,
+        }
+        f.write_str(&unit(self.exponent))
+    }
+}
+
+/// A word or sign behind a number that makes it a rated voltage.
+#[derive(Clone, Debug, PartialEq)]
+pub struct VoltageWord {
+    /// The word.
+    pub word: String,
+    /// The unit.
+    pub scale: Volt,
+    /// What it says about the kind of voltage.
+    pub kind: VoltageKind,
+}
+
+/// Whether a voltage is direct or alternating.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Deserialize)]
+#[serde(rename_all = "lowercase")]
+pub enum VoltageKind {
+    /// Nothing is said.
+    Unstated,
+    /// Direct.
+    Dc,
+    /// Alternating, effective.
+    Ac,
+}
+
+#[derive(Deserialize)]
+#[serde(deny_unknown_fields)]
+pub(super) struct RawVoltageWord {
+    word: String,
+    scale: String,
+    kind: VoltageKind,
+    source: Option<String>,
+}
+
+impl RawRow for RawVoltageWord {
+    type Typed = VoltageWord;
+    fn key(&self) -> String {
+        self.word.clone()
+    }
+    fn source(&self) -> Option<&str> {
+        self.source.as_deref()
+    }
+    fn typed(self) -> Result<VoltageWord, String> {
+        Ok(VoltageWord {
+            word: some_text(self.word)?,
+            scale: quantity(&self.scale)?,
+            kind: self.kind,
+        })
+    }
+}
+
+impl fmt::Display for VoltageWord {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        let kind = match self.kind {
+            VoltageKind::Unstated => "kind not stated",
+            VoltageKind::Dc => "direct",
+            VoltageKind::Ac => "alternating",
+        };
+        write!(f, "{}: {}, {kind}", self.word, self.scale)
+    }
+}
+
+/// A word that names a family or a temperature characteristic.
+#[derive(Clone, Debug, PartialEq)]
+pub struct FamilyWord {
+    /// The word.
+    pub word: String,
+    /// The family.
+    pub family: Family,
+    /// The characteristic, by its usual name.
+    pub characteristic: Option<String>,
+    /// The kinds of the ranking table that the part can be; empty: those of the family.
+    pub kinds: Vec<String>,
+}
+
+#[derive(Deserialize)]
+#[serde(deny_unknown_fields)]
+pub(super) struct RawFamilyWord {
+    word: String,
+    family: String,
+    characteristic: Option<String>,
+    kinds: Option<Vec<String>>,
+    source: Option<String>,
+}
+
+impl RawRow for RawFamilyWord {
+    type Typed = FamilyWord;
+    fn key(&self) -> String {
+        self.word.clone()
+    }
+    fn source(&self) -> Option<&str> {
+        self.source.as_deref()
+    }
+    fn typed(self) -> Result<FamilyWord, String> {
+        Ok(FamilyWord {
+            word: some_text(self.word)?,
+            family: family(&self.family)?,
+            characteristic: self.characteristic,
+            kinds: self.kinds.unwrap_or_default(),
+        })
+    }
+}
+
+impl fmt::Display for FamilyWord {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        write!(f, "{}: {}", self.word, self.family)?;
+        match &self.characteristic {
+            Some(name) => write!(f, ", characteristic {name}"),
+            None => Ok(()),
+        }
+    }
+}
+
+/// A class of interference suppression.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct SafetyWord {
+    /// The class: "X2".
+    pub word: String,
+    /// Where such a part may stand.
+    pub usage: String,
+}
+
+#[derive(Deserialize)]
+#[serde(deny_unknown_fields)]
+pub(super) struct RawSafetyWord {
+    word: String,
+    r#use: String,
+    source: Option<String>,
+}
+
+impl RawRow for RawSafetyWord {
+    type Typed = SafetyWord;
+    fn key(&self) -> String {
+        self.word.clone()
+    }
+    fn source(&self) -> Option<&str> {
+        self.source.as_deref()
+    }
+    fn typed(self) -> Result<SafetyWord, String> {
+        if !self.word.starts_with(['X', 'Y']) || self.word.chars().count() != 2 {
+            return Err("a class is X or Y and a digit".to_owned());
+        }
+        Ok(SafetyWord {
+            word: self.word,
+            usage: self.r#use,
+        })
+    }
+}
+
+impl fmt::Display for SafetyWord {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        write!(f, "{}: {}", self.word, self.usage)
+    }
+}
+
+/// The figures one place of a climatic category can have.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct ClimateFigure {
+    /// The place.
+    pub figure: ClimatePlace,
+    /// The figures as printed.
+    pub values: Vec<String>,
+}
+
+/// A place of a climatic category.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Deserialize)]
+#[serde(rename_all = "lowercase")]
+pub enum ClimatePlace {
+    /// Third: days of damp heat.
+    Days,
+    /// Second: highest temperature.
+    Highest,
+    /// First: lowest temperature without its minus sign.
+    Lowest,
+}
+
+#[derive(Deserialize)]
+#[serde(deny_unknown_fields)]
+pub(super) struct RawClimateFigure {
+    figure: ClimatePlace,
+    values: Vec<String>,
+    source: Option<String>,
+}
+
+impl RawRow for RawClimateFigure {
+    type Typed = ClimateFigure;
+    fn key(&self) -> String {
+        format!("{:?}", self.figure)
+    }
+    fn source(&self) -> Option<&str> {
+        self.source.as_deref()
+    }
+    fn typed(self) -> Result<ClimateFigure, String> {
+        Ok(ClimateFigure {
+            figure: self.figure,
+            values: self.values,
+        })
+    }
+}
+
+impl fmt::Display for ClimateFigure {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        let figure = match self.figure {
+            ClimatePlace::Days => "days of damp heat",
+            ClimatePlace::Highest => "highest temperature, °C",
+            ClimatePlace::Lowest => "lowest temperature, °C, without its minus",
+        };
+        write!(f, "{figure}: {}", self.values.join(" "))
+    }
+}
+
+pub(super) fn family(name: &str) -> Result<Family, String> {
+    Family::named(name).ok_or_else(|| format!("`{name}` is no family"))
+}
+
+fn exponent(value: i8) -> Result<i8, String> {
+    if (-12..=0).contains(&value) {
+        Ok(value)
+    } else {
+        Err(format!("the power of ten {value} is not -12 to 0"))
+    }
+}
+
+fn some_text(word: String) -> Result<String, String> {
+    if word.trim().is_empty() {
+        Err("the word is empty".to_owned())
+    } else {
+        Ok(word)
+    }
+}
+
+fn unit(exponent: i8) -> String {
+    engineering(
+        10f64.powi(i32::from(exponent)),
+        Resolution::Nominal,
+        Farad::SYMBOL,
+    )
+}
