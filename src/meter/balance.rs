@@ -64,10 +64,11 @@ impl Roots {
     /// The smallest root above 0.
     fn smallest_positive(self) -> Option<f64> {
         match self {
-            Self::Two(x, _) | Self::One(x) if x > 0.0 => Some(x),
-            Self::Two(_, x) if x > 0.0 => Some(x),
-            _ => None,
+            Self::None => None,
+            Self::One(x) => Some(x),
+            Self::Two(x, y) => Some(if x > 0.0 { x } else { y }),
         }
+        .filter(|x| *x > 0.0)
     }
 }
 

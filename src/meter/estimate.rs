@@ -181,15 +181,13 @@ impl Bench<'_> {
         let (mut c0, mut e0) = (start, first - reading);
         let mut c1 = start * ratio.clamp(0.5, 2.0);
         for _ in 0..3 {
-            if e0 == 0.0 {
-                return Some(c0);
-            }
             let Some(e1) = error(c1) else { return Some(c1) };
-            if e1 == e0 {
+            let next = c1 - e1 * (c1 - c0) / (e1 - e0);
+            // Equal errors, both of them nothing when the start was exact, leave no secant.
+            if !next.is_finite() {
                 return Some(c1);
             }
-            let next = (c1 - e1 * (c1 - c0) / (e1 - e0)).clamp(0.5 * start, 2.0 * start);
-            (c0, e0, c1) = (c1, e1, next);
+            (c0, e0, c1) = (c1, e1, next.clamp(0.5 * start, 2.0 * start));
         }
         Some(c1)
     }
@@ -367,7 +365,7 @@ impl Bench<'_> {
         for _ in 0..60 {
             let middle = low + (high - low) * at_low / (at_low - at_high);
             let at_middle = excess(middle)?;
-            if at_middle == 0.0 || (high - low) < 1e-9 * high {
+            if (high - low) < 1e-9 * high {
                 return Some(middle);
             }
             if at_middle < 0.0 {
@@ -479,7 +477,7 @@ fn loss_of(found: &Chord, u_w: f64, usual_loss: f64) -> (LossSeen, f64) {
     // A loss is never negative; of two candidates the family's usual loss chooses.
     let is_first = one.d >= 0.0 && (one.d - usual_loss).abs() < (two.d - usual_loss).abs();
     let (chosen, rejected) = if is_first { (one, two) } else { (two, one) };
-    let other = (rejected.d >= 0.0 && rejected.d != chosen.d).then_some(rejected.d);
+    let other = (found.crossings.is_some() && rejected.d >= 0.0).then_some(rejected.d);
     let seen = LossSeen {
         proven: Some(chosen.d),
         other,

@@ -382,7 +382,7 @@ fn read_points(
             );
             return None;
         };
-        let (Some(reading), Some(resistance), 2) = (pair.get(0), pair.get(1), pair.len()) else {
+        let (Some(reading), Some(resistance), 2) = (pair.first(), pair.get(1), pair.len()) else {
             document.complain(
                 item.span(),
                 "a point is a pair; accepted here: [reading, \"resistance\"]".into(),
@@ -414,7 +414,11 @@ fn read_points(
                 "reading {} stands after {}; accepted here: points by rising reading",
                 after.0, before.0
             )
-        } else if after.1 == before.1 || (after.1 > before.1) != is_rising {
+        } else if !(if is_rising {
+            before.1 < after.1
+        } else {
+            after.1 < before.1
+        }) {
             let trend = if is_rising { "rise" } else { "fall" };
             format!(
                 "at {} the resistance is {} after {}; accepted here: resistances that {trend} all the way",
@@ -553,7 +557,7 @@ fn read_calibration(
             other => other.as_str().unwrap_or_default().to_owned(),
         });
     let hash = document.text_of(section, "profile_hash", Need::Required);
-    let observations = document.number(section, "observations", Bound::NotNegative, Need::Required);
+    let observations = document.count(section, "observations", 0..=u32::MAX, Need::Required);
     let reduced = document.number(
         section,
         "reduced_chi_square",
@@ -563,7 +567,7 @@ fn read_calibration(
     let fit = read_fit(document, section, meter);
     let calibration = Calibration {
         date: date?,
-        observations: observations?.value.round().clamp(0.0, f64::from(u32::MAX)) as u32,
+        observations: observations?,
         reduced_chi_square: reduced?.value,
         fit: fit?,
     };

@@ -1,7 +1,7 @@
 //! A tolerance as printed on a part, and the limits it gives.
 
 use super::engineering::plain;
-use super::{Farad, Fraction, Quantity, Refusal, RefusalKind, number, parse};
+use super::{Farad, Fraction, Quantity, Refusal, number, parse};
 
 /// How far a part may lie from its nominal value.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -122,14 +122,17 @@ impl Tolerance {
             return parse::<Farad>(text).map(Self::Absolute);
         }
         let found = text.get(used..).unwrap_or_default().trim();
-        Err(Refusal {
-            at: whole,
-            reading: READING,
-            kind: RefusalKind::Unexpected {
-                found: found.to_owned(),
-                accepted: "a percent sign or a unit such as pF".into(),
-            },
-        })
+        let at = if found.is_empty() {
+            whole.end..whole.end
+        } else {
+            whole
+        };
+        Err(Refusal::found(
+            at,
+            READING,
+            found,
+            "a percent sign or a unit such as pF",
+        ))
     }
 }
 
@@ -176,7 +179,10 @@ mod tests {
 
     #[test]
     fn refusals() {
-        check("5", "found ` ` at position 1 while reading the tolerance; accepted here: a percent sign or a unit such as pF".replace("` `", "``").as_str());
+        check(
+            "5",
+            "found the end after position 1 while reading the tolerance; accepted here: a percent sign or a unit such as pF",
+        );
         check(
             "five",
             "found `f` at position 1 while reading the tolerance; accepted here: a number",

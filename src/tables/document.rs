@@ -1,6 +1,6 @@
 //! TOML files that people write: a tree with places, walked with our own lists of keys, every mistake reported.
 
-use std::ops::Range;
+use std::ops::{Range, RangeInclusive};
 
 use toml::Spanned;
 use toml::de::{DeTable, DeValue};
@@ -312,6 +312,34 @@ impl<'t> Document<'t> {
         let number = self.plain_number(value.get_ref(), key, &at, "a number")?;
         self.bounded(number, key, &at, bound)
             .map(|value| Placed { value, at })
+    }
+
+    /// Returns a whole number within the range.
+    pub fn count(
+        &mut self,
+        section: &Section<'_>,
+        key: &str,
+        range: RangeInclusive<u32>,
+        need: Need,
+    ) -> Option<u32> {
+        let value = self.get(section, key, need)?;
+        let count = value.get_ref().as_integer().and_then(|n| {
+            i64::from_str_radix(n.as_str(), n.radix())
+                .ok()
+                .and_then(|n| u32::try_from(n).ok())
+        });
+        if let Some(count) = count.filter(|count| range.contains(count)) {
+            return Some(count);
+        }
+        let found = self.text.get(value.span()).unwrap_or_default();
+        let message = format!(
+            "`{key}` is {}; accepted here: a whole number from {} to {}",
+            harmless(found),
+            range.start(),
+            range.end()
+        );
+        self.complain(value.span(), message);
+        None
     }
 
     /// Returns a fraction written as a percentage, not negative.

@@ -23,7 +23,7 @@ pub use ranking::{
 };
 pub use read::{TableError, TableRow};
 pub use values::{RatedVoltages, Series, ValueSeries};
-pub use without_bias::peak_without_bias;
+pub use without_bias::{WithoutBias, peak_without_bias};
 pub use words::{
     ClimateFigure, ClimatePlace, FamilyWord, Place, PointLetter, SafetyWord, UnitWord, VoltageKind,
     VoltageWord,
@@ -104,6 +104,7 @@ tables! {
     family_words: words::RawFamilyWord => FamilyWord, "family-words.toml", "Returns the words for families and characteristics.";
     safety_words: words::RawSafetyWord => SafetyWord, "safety-classes.toml", "Returns the classes of interference suppression.";
     climate_figures: words::RawClimateFigure => ClimateFigure, "climate.toml", "Returns the figures of climatic categories.";
+    without_bias: without_bias::RawWithoutBias => WithoutBias, "without-bias.toml", "Returns the voltages for polarised families.";
     families: facts::RawFamilyRow => FamilyRow, "families.toml", "Returns the members of families, and the groups without named ones.";
 }
 

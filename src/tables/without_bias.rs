@@ -1,51 +1,62 @@
 //! How much alternating voltage a polarised part may see without bias.
 
-use std::sync::LazyLock;
-
-use serde::Deserialize;
-
-use super::Family;
+use super::read::RawRow;
+use super::{Family, TABLES};
 use crate::quantity::{Volt, parse};
+use serde::Deserialize;
+use std::fmt;
 
-#[derive(Deserialize)]
-#[serde(deny_unknown_fields)]
-struct File {
-    #[serde(rename = "format")]
-    _format: u32,
-    #[serde(rename = "source")]
-    _source: String,
-    row: Vec<Row>,
+/// The highest alternating voltage for a family.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct WithoutBias {
+    /// The family.
+    pub family: Family,
+    /// The voltage, peak.
+    pub peak: Volt,
 }
 
 #[derive(Deserialize)]
 #[serde(deny_unknown_fields)]
-struct Row {
+pub(super) struct RawWithoutBias {
     family: String,
     peak: String,
+    source: Option<String>,
 }
 
-static ROWS: LazyLock<Vec<(Family, Volt)>> = LazyLock::new(|| {
-    let file: File = toml::from_str(include_str!("../../data/without-bias.toml"))
-        .expect("data/without-bias.toml is tested");
-    file.row
-        .iter()
-        .map(|row| {
-            let family = Family::named(&row.family)
-                .expect("a family of data/without-bias.toml has its name");
-            (
-                family,
-                parse(&row.peak).expect("a voltage of data/without-bias.toml can be read"),
-            )
-        })
-        .collect()
-});
+impl RawRow for RawWithoutBias {
+    type Typed = WithoutBias;
+    fn key(&self) -> String {
+        self.family.clone()
+    }
+    fn source(&self) -> Option<&str> {
+        self.source.as_deref()
+    }
+    fn typed(self) -> Result<WithoutBias, String> {
+        let family = Family::named(&self.family)
+            .ok_or_else(|| format!("no family is called {}", self.family))?;
+        let peak = parse(&self.peak).map_err(|refusal| refusal.to_string())?;
+        Ok(WithoutBias { family, peak })
+    }
+}
+
+impl fmt::Display for WithoutBias {
+    /// Writes "tantalum: at most 500 mV peak without bias".
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        write!(
+            f,
+            "{}: at most {} peak without bias",
+            self.family, self.peak
+        )
+    }
+}
 
 /// Returns the highest alternating voltage, peak, that a part of this family should see without direct voltage beside it;
 /// `None` for families without polarity.
 pub fn peak_without_bias(family: Family) -> Option<Volt> {
-    ROWS.iter()
-        .find(|(row, _)| family.is_one_of(*row))
-        .map(|(_, peak)| *peak)
+    TABLES
+        .without_bias()
+        .find(|row| family.is_one_of(row.family))
+        .map(|row| row.peak)
 }
 
 #[cfg(test)]

@@ -1,4 +1,6 @@
 //! The integration tests, one binary: a module a subject.
 
 mod balance;
+mod planted;
+mod profiles;
 mod tables;

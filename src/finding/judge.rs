@@ -1,0 +1,419 @@
+//! From a measured value to a word.
+
+use super::advice::advise;
+use super::loss::{LossVerdict, judge_loss};
+use super::parked::Window;
+use super::prior::{Evidence, Interval, Prior, flat_probability, unmarked_evidence};
+use super::{
+    Circumstances, HouseRules, Limits, Observation, PriorKind, ReadingCertainty, Slip, Standing,
+    Tested, Verdict, Word, expect, limits, remark, slip,
+};
+use crate::marking::{Decoding, Reading};
+use crate::meter::{DialReading, Estimate, Lamp, Part, Seen, Stop, Value, predict};
+use crate::tables::{Dielectric, Family};
+
+/// A class 2 or 3 ceramic is not judged sooner after it was heated (IEC 60384-9: conditioning, then 24 h of rest; from
+/// memory).
+const HOURS_AFTER_HEAT: f64 = 24.0;
+
+/// Returns the finding. `chosen` is the reading of the marking that the person picked; without it the best one after
+/// the measurement is judged.
+pub fn judge(
+    decoding: &Decoding,
+    chosen: Option<usize>,
+    observation: &Observation<'_>,
+    circumstances: &Circumstances,
+    rules: &HouseRules,
+) -> Verdict {
+    let case = Case {
+        decoding,
+        observation,
+        circumstances,
+        rules,
+    };
+    let ranked = Ranked::of(&case, chosen);
+    let Some(index) = ranked.chosen else {
+        return case.without_reading(ranked);
+    };
+    let reading = &decoding.readings[index];
+    case.decide(&ranked, index, reading)
+}
+
+/// All that a finding rests on.
+struct Case<'a> {
+    decoding: &'a Decoding,
+    observation: &'a Observation<'a>,
+    circumstances: &'a Circumstances,
+    rules: &'a HouseRules,
+}
+
+/// One reading of the marking, weighed by the measurement.
+struct Weighed {
+    limits: Limits,
+    prior: Prior,
+    evidence: Evidence,
+    probability_flat: Option<f64>,
+}
+
+/// The readings after the measurement.
+struct Ranked {
+    weighed: Vec<Weighed>,
+    ranking: Vec<Standing>,
+    chosen: Option<usize>,
+}
+
+impl Ranked {
+    fn of(case: &Case<'_>, chosen: Option<usize>) -> Self {
+        let weighed: Vec<Weighed> = case
+            .decoding
+            .readings
+            .iter()
+            .map(|reading| case.weigh(reading))
+            .collect();
+        let plausibilities = case.decoding.readings.iter().map(|r| r.plausibility);
+        let remainder = (1.0 - plausibilities.clone().sum::<f64>()).max(0.0);
+        let mut ranking: Vec<Standing> = weighed
+            .iter()
+            .zip(plausibilities)
+            .enumerate()
+            .map(|(index, (w, plausibility))| Standing {
+                reading: Some(index),
+                posterior: plausibility * w.evidence.total,
+            })
+            .collect();
+        ranking.push(Standing {
+            reading: None,
+            posterior: remainder * case.unmarked(),
+        });
+        let total: f64 = ranking.iter().map(|s| s.posterior).sum();
+        for standing in &mut ranking {
+            standing.posterior = if total > 0.0 {
+                standing.posterior / total
+            } else {
+                0.0
+            };
+        }
+        // Stable: readings that the measurement leaves alike keep the order of their plausibility.
+        ranking.sort_by(|x, y| y.posterior.total_cmp(&x.posterior));
+        let best = ranking.iter().find_map(|standing| standing.reading);
+        let chosen = chosen.filter(|index| *index < weighed.len()).or(best);
+        Self {
+            weighed,
+            ranking,
+            chosen,
+        }
+    }
+
+    fn posterior(&self, reading: usize) -> f64 {
+        self.ranking
+            .iter()
+            .find(|s| s.reading == Some(reading))
+            .map_or(0.0, |s| s.posterior)
+    }
+}
+
+impl Weighed {
+    fn probability(&self) -> f64 {
+        if self.evidence.total > 0.0 {
+            self.evidence.inside / self.evidence.total
+        } else {
+            0.0
+        }
+    }
+}
+
+impl Case<'_> {
+    fn weigh(&self, reading: &Reading) -> Weighed {
+        let limits = limits(reading, self.rules);
+        let prior = Prior::of(reading.capacitance, limits.made_to, self.rules);
+        let interval = Interval::of(&limits);
+        let (evidence, probability_flat) = match self.observation.measured.value {
+            Value::Estimate(estimate) => {
+                let (c, u) = value_and_uncertainty(estimate);
+                (
+                    prior.evidence(c, u, interval),
+                    Some(flat_probability(c, u, interval)),
+                )
+            }
+            Value::Window { lamp, low, high } => {
+                let window = Window { lamp, low, high };
+                (
+                    window.evidence(prior, interval),
+                    window.flat_probability(interval),
+                )
+            }
+            // Nothing measured weighs all readings alike.
+            Value::Open | Value::Unknown => (
+                Evidence {
+                    total: 1.0,
+                    inside: 0.0,
+                },
+                None,
+            ),
+        };
+        Weighed {
+            limits,
+            prior,
+            evidence,
+            probability_flat,
+        }
+    }
+
+    /// The evidence of "none of these readings".
+    fn unmarked(&self) -> f64 {
+        match self.observation.measured.value {
+            Value::Estimate(estimate) => {
+                let (c, u) = value_and_uncertainty(estimate);
+                unmarked_evidence(c, u)
+            }
+            Value::Window { lamp, low, high } => Window { lamp, low, high }.unmarked_evidence(),
+            Value::Open | Value::Unknown => 1.0,
+        }
+    }
+
+    fn decide(&self, ranked: &Ranked, index: usize, reading: &Reading) -> Verdict {
+        let measured = self.observation.measured;
+        let weighed = &ranked.weighed[index];
+        let part = expect(reading, self.rules);
+        let loss = judge_loss(
+            &measured.loss,
+            reading.family,
+            self.observation.meter.frequency,
+        );
+        let estimate = measured
+            .estimate()
+            .filter(|_| loss != LossVerdict::TooLossy);
+        let is_weighed = estimate.is_some() || matches!(measured.value, Value::Window { .. });
+        let probability = is_weighed.then(|| weighed.probability());
+        let mut remarks = Vec::new();
+        let mut found_slip = None;
+        let word = if let Some(why) = self.death(&part, loss) {
+            remarks.push(why);
+            Word::Dead
+        } else if let Some(probability) = self.deciding_probability(weighed).filter(|_| is_weighed)
+        {
+            let word = word_of(probability, self.rules);
+            let (word, why, slip) = self.withheld(word, ranked, index, &part);
+            remarks.extend(why);
+            found_slip = slip;
+            word
+        } else {
+            remarks.push(remark::no_value(
+                self.observation,
+                loss == LossVerdict::TooLossy,
+            ));
+            Word::Undecided
+        };
+        remarks.extend(remark::about_limits(
+            reading,
+            &weighed.limits,
+            estimate,
+            word,
+        ));
+        if let Value::Window { lamp, low, high } = measured.value {
+            remarks.push(remark::window(lamp, low, high));
+        }
+        if probability == Some(0.0) {
+            remarks.push("far from every reading of this marking".to_owned());
+        }
+        if word == Word::Undecided && found_slip.is_none() {
+            remarks.extend(self.next_step(estimate, &part, weighed));
+        }
+        remarks.extend(remark::about_loss(measured, loss));
+        remarks.extend(remark::largest_doubt(measured, word));
+        remarks.extend(remark::about_circumstances(self.circumstances, reading));
+        Verdict {
+            word,
+            chosen: Some(index),
+            limits: Some(weighed.limits),
+            deviation: estimate.map(|e| remark::deviation(e, reading)),
+            probability_inside: probability,
+            probability_flat: weighed.probability_flat.filter(|_| is_weighed),
+            reading_probability: Some(ranked.posterior(index)),
+            ranking: ranked.ranking.clone(),
+            slip: found_slip,
+            value: match word {
+                Word::Inside => Tested::Ok,
+                Word::Outside | Word::Dead => Tested::Bad,
+                Word::Undecided => Tested::NotTested,
+            },
+            loss: match loss {
+                LossVerdict::Fine(tested) => tested,
+                LossVerdict::High | LossVerdict::Dead { .. } | LossVerdict::TooLossy => Tested::Bad,
+            },
+            leakage: Tested::NotTested,
+            looks: remark::looks(self.circumstances),
+            remarks,
+        }
+    }
+
+    fn deciding_probability(&self, weighed: &Weighed) -> Option<f64> {
+        match self.rules.prior {
+            PriorKind::Salvage => Some(weighed.probability()),
+            PriorKind::Flat => weighed.probability_flat,
+        }
+    }
+
+    /// Why the part is dead: open, or far too lossy.
+    fn death(&self, part: &Part, loss: LossVerdict) -> Option<String> {
+        let Observation {
+            meter,
+            switch,
+            seen,
+            measured,
+        } = *self.observation;
+        if let LossVerdict::Dead { limit } = loss {
+            return Some(remark::dead_by_loss(measured, limit));
+        }
+        if measured.value == Value::Open {
+            return Some("open: less than the open terminals show".to_owned());
+        }
+        let Seen::NeverDark {
+            dimmest: Some(place),
+        } = seen
+        else {
+            return None;
+        };
+        let low = Part {
+            capacitance: part.low?,
+            ..*part
+        };
+        let would_null = predict(meter, switch, &low).beyond.is_none();
+        (place == low_resistance_stop(self.observation) && would_null)
+            .then(|| "open: dimmest at the stop of least resistance, where no part inside its limits would null".to_owned())
+    }
+
+    /// What withholds a word: another reading of the marking, a slip, recent heat.
+    fn withheld(
+        &self,
+        word: Word,
+        ranked: &Ranked,
+        index: usize,
+        part: &Part,
+    ) -> (Word, Option<String>, Option<Slip>) {
+        if word == Word::Undecided {
+            return (word, None, None);
+        }
+        if let Some(why) = self.another_reading(word, ranked, index) {
+            return (Word::Undecided, Some(why), None);
+        }
+        if word != Word::Outside {
+            return (word, None, None);
+        }
+        if let Some(hours) = self.hours_to_wait(part.family) {
+            let why = format!(
+                "hold it {hours:.0} h more: a class 2 or 3 ceramic reads high after heat; then measure again"
+            );
+            return (Word::Undecided, Some(why), None);
+        }
+        if self.circumstances.reading == ReadingCertainty::Once
+            && let Some(slip) = slip::find(
+                self.observation,
+                part,
+                Interval::of(&ranked.weighed[index].limits),
+            )
+        {
+            return (Word::Undecided, Some(slip.to_string()), Some(slip));
+        }
+        (word, None, None)
+    }
+
+    /// Another reading, probable enough, that would lead to another word; "none of these" only when it is the most
+    /// probable of all (else no part far outside could ever be called so).
+    fn another_reading(&self, word: Word, ranked: &Ranked, index: usize) -> Option<String> {
+        let first = ranked.ranking.first()?;
+        if first.reading.is_none() && word == Word::Inside {
+            return Some("none of the readings of this marking fits".to_owned());
+        }
+        let rival = ranked.ranking.iter().find_map(|standing| {
+            let other = standing.reading.filter(|other| *other != index)?;
+            let weighed = ranked.weighed.get(other)?;
+            let is_probable = standing.posterior >= 1.0 - self.rules.confidence;
+            (is_probable && word_of(weighed.probability(), self.rules) != word).then_some(other)
+        })?;
+        let words = |reading: usize| self.decoding.readings[reading].in_words();
+        Some(format!(
+            "the marking may mean {} or {}",
+            words(index),
+            words(rival)
+        ))
+    }
+
+    fn hours_to_wait(&self, family: Option<Family>) -> Option<f64> {
+        let heated = self
+            .circumstances
+            .heated_hours
+            .filter(|hours| *hours < HOURS_AFTER_HEAT)?;
+        let member = family.and_then(Family::member)?;
+        matches!(
+            member,
+            Dielectric::Disc2 | Dielectric::Disc3 | Dielectric::Mlcc2
+        )
+        .then_some((HOURS_AFTER_HEAT - heated).max(1.0))
+    }
+
+    fn next_step(
+        &self,
+        estimate: Option<Estimate>,
+        part: &Part,
+        weighed: &Weighed,
+    ) -> Option<String> {
+        let Some(estimate) = estimate else {
+            return matches!(
+                self.observation.measured.value,
+                Value::Window {
+                    lamp: Lamp::Lit,
+                    ..
+                }
+            )
+            .then(|| "next: turn the dial and read the middle of the dark arc".to_owned());
+        };
+        let asked = (Interval::of(&weighed.limits), self.rules);
+        Some(advise(self.observation, estimate, part, weighed.prior, asked).to_string())
+    }
+
+    fn without_reading(&self, ranked: Ranked) -> Verdict {
+        Verdict {
+            word: Word::Undecided,
+            chosen: None,
+            limits: None,
+            deviation: None,
+            probability_inside: None,
+            probability_flat: None,
+            reading_probability: None,
+            ranking: ranked.ranking,
+            slip: None,
+            value: Tested::NotTested,
+            loss: Tested::NotTested,
+            leakage: Tested::NotTested,
+            looks: remark::looks(self.circumstances),
+            remarks: vec!["nothing in the marking is a value: measured only".to_owned()],
+        }
+    }
+}
+
+fn word_of(probability: f64, rules: &HouseRules) -> Word {
+    if probability >= rules.confidence {
+        Word::Inside
+    } else if probability <= 1.0 - rules.confidence {
+        Word::Outside
+    } else {
+        Word::Undecided
+    }
+}
+
+/// A meter without any doubt still leaves a billionth, so that no division is by zero.
+fn value_and_uncertainty(estimate: Estimate) -> (f64, f64) {
+    let combined = estimate.combined();
+    let c = combined.value.get();
+    (c, combined.standard_uncertainty.get().max(1e-9 * c))
+}
+
+fn low_resistance_stop(observation: &Observation<'_>) -> DialReading {
+    let dial = &observation.meter.dial;
+    dial.number_at(if dial.is_falling() {
+        Stop::High
+    } else {
+        Stop::Low
+    })
+}
