@@ -1,6 +1,7 @@
 //! The integration tests, one binary: a module a subject.
 
 mod balance;
+mod example;
 mod planted;
 mod profiles;
 mod tables;
