@@ -26,7 +26,7 @@ pub use values::{RatedVoltages, Series, ValueSeries};
 pub use without_bias::{WithoutBias, peak_without_bias};
 pub use words::{
     ClimateFigure, ClimatePlace, FamilyWord, Place, PointLetter, SafetyWord, UnitWord, VoltageKind,
-    VoltageWord,
+    VoltagePoint, VoltageWord,
 };
 
 use read::{RawRow, Table, read_rows};
@@ -96,6 +96,7 @@ tables! {
     voltage_codes: codes::RawVoltageCode => VoltageCode, "voltage-codes.toml", "Returns the letters of the voltage code.";
     voltage_letters: codes::RawVoltageLetter => VoltageLetter, "voltage-letters.toml", "Returns the single voltage letters.";
     voltage_words: words::RawVoltageWord => VoltageWord, "voltage-words.toml", "Returns the words for a voltage.";
+    voltage_points: words::RawVoltagePoint => VoltagePoint, "voltage-points.toml", "Returns the letters for the decimal point of a voltage.";
     rated_voltages: values::RawRatedVoltages => RatedVoltages, "rated-voltages.toml", "Returns the usual rated voltages.";
     value_series: values::RawValueSeries => ValueSeries, "preferred-values.toml", "Returns the series of preferred values.";
     multipliers: codes::RawMultiplier => Multiplier, "multipliers.toml", "Returns the multiplier digits.";

@@ -186,6 +186,55 @@ impl fmt::Display for VoltageWord {
     }
 }
 
+/// A letter that stands for the decimal point of a rated voltage.
+#[derive(Clone, Debug, PartialEq)]
+pub struct VoltagePoint {
+    /// The letter.
+    pub letter: char,
+    /// The unit.
+    pub scale: Volt,
+    /// How often the letter means this, 0 to 1.
+    pub share: f64,
+}
+
+#[derive(Deserialize)]
+#[serde(deny_unknown_fields)]
+pub(super) struct RawVoltagePoint {
+    letter: char,
+    scale: String,
+    share: Option<f64>,
+    source: Option<String>,
+}
+
+impl RawRow for RawVoltagePoint {
+    type Typed = VoltagePoint;
+    fn key(&self) -> String {
+        self.letter.to_string()
+    }
+    fn source(&self) -> Option<&str> {
+        self.source.as_deref()
+    }
+    fn typed(self) -> Result<VoltagePoint, String> {
+        Ok(VoltagePoint {
+            letter: self.letter,
+            scale: quantity(&self.scale)?,
+            share: Share::read(self.share, None)?.usual,
+        })
+    }
+}
+
+impl fmt::Display for VoltagePoint {
+    /// Writes "k for the point, as in 1k6: 1 kV".
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        let letter = self.letter;
+        write!(
+            f,
+            "{letter} for the point, as in 1{letter}6: {}",
+            self.scale
+        )
+    }
+}
+
 /// A word that names a family or a temperature characteristic.
 #[derive(Clone, Debug, PartialEq)]
 pub struct FamilyWord {

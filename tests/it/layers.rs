@@ -4,8 +4,9 @@ use std::fs;
 use std::path::{Path, PathBuf};
 
 /// The stations in their order. A station may use itself and those to its left.
-const LINE: [&str; 8] =
-    ["quantity", "tables", "marking", "meter", "finding", "tray", "app", "screen"];
+const LINE: [&str; 8] = [
+    "quantity", "tables", "marking", "meter", "finding", "tray", "app", "screen",
+];
 const EDGES: [&str; 3] = ["log", "terminal", "cli"];
 
 fn sources(folder: &Path, found: &mut Vec<PathBuf>) {
@@ -21,7 +22,9 @@ fn sources(folder: &Path, found: &mut Vec<PathBuf>) {
 
 /// The code of every line of a station, without comments and without its unit tests.
 fn lines_of(station: &str) -> Vec<(String, String)> {
-    let root = Path::new(env!("CARGO_MANIFEST_DIR")).join("src").join(station);
+    let root = Path::new(env!("CARGO_MANIFEST_DIR"))
+        .join("src")
+        .join(station);
     let mut files = Vec::new();
     sources(&root, &mut files);
     assert!(!files.is_empty(), "{station} has sources");
@@ -33,7 +36,10 @@ fn lines_of(station: &str) -> Vec<(String, String)> {
                 break;
             }
             let code = line.split("//").next().unwrap_or_default();
-            lines.push((format!("{}:{}", file.display(), number + 1), code.to_owned()));
+            lines.push((
+                format!("{}:{}", file.display(), number + 1),
+                code.to_owned(),
+            ));
         }
     }
     lines
@@ -42,14 +48,26 @@ fn lines_of(station: &str) -> Vec<(String, String)> {
 #[test]
 fn pure_stations_touch_nothing_outside() {
     const OUTSIDE: [&str; 11] = [
-        "std::fs", "std::env", "std::io", "std::net", "std::time", "std::process", "std::thread", "crossterm",
-        "rusqlite", "Local::now", "Utc::now",
+        "std::fs",
+        "std::env",
+        "std::io",
+        "std::net",
+        "std::time",
+        "std::process",
+        "std::thread",
+        "crossterm",
+        "rusqlite",
+        "Local::now",
+        "Utc::now",
     ];
     for station in LINE {
         for (place, code) in lines_of(station) {
             for outside in OUTSIDE {
                 // `std::fs` must not catch `std::fsomething`; `std::time` is the only one with a longer namesake.
-                assert!(!code.contains(outside), "{place} uses {outside}: stations are pure");
+                assert!(
+                    !code.contains(outside),
+                    "{place} uses {outside}: stations are pure"
+                );
             }
         }
     }
@@ -62,7 +80,10 @@ fn no_station_looks_backwards() {
         for (place, code) in lines_of(station) {
             for other in later.clone() {
                 let named = format!("crate::{other}");
-                assert!(!code.contains(&named), "{place}: {station} names {other}, which comes after it");
+                assert!(
+                    !code.contains(&named),
+                    "{place}: {station} names {other}, which comes after it"
+                );
             }
         }
     }

@@ -2,6 +2,8 @@
 
 mod balance;
 mod example;
+mod judge;
+mod layers;
 mod planted;
 mod profiles;
 mod tables;
