@@ -11,6 +11,8 @@
 //! A guaranteed minimum of N has m = 1.5N, t = 0.5N. The measured value c is normal with standard uncertainty u about the
 //! true one, so that evidence and posterior need only Φ (JCGM 106:2012, 7, treats deciding with a prior).
 
+use std::sync::LazyLock;
+
 use super::normal::{between, density};
 use super::{HouseRules, Limits};
 use crate::quantity::{Farad, Tolerance};
@@ -54,7 +56,7 @@ pub(super) struct Interval {
     pub(super) high: f64,
 }
 
-const N_TAIL_STEPS: i32 = 12;
+const N_TAIL_STEPS: usize = 12;
 
 impl Prior {
     pub(super) fn of(nominal: Farad, made_to: Tolerance, rules: &HouseRules) -> Self {
@@ -87,11 +89,7 @@ impl Prior {
             low: (m - 3.0 * t).max(0.01 * m),
             high: m + 3.0 * t,
         };
-        let tail = (0..N_TAIL_STEPS).map(move |k| Piece::Flat {
-            weight: 0.5 * drifted / f64::from(N_TAIL_STEPS),
-            low: tail_edge(m, k),
-            high: tail_edge(m, k + 1),
-        });
+        let tail = steps(0.01 * m, 0.5 * drifted, N_TAIL_STEPS);
         [made, wide].into_iter().chain(tail)
     }
 
@@ -171,12 +169,22 @@ pub(super) fn flat_probability(c: f64, u: f64, limits: Interval) -> f64 {
 /// The hypothesis "none of these readings": log-uniform from 0.1 pF in 52 steps of a quarter decade.
 pub(super) fn unmarked_pieces() -> impl Iterator<Item = Piece> {
     const SMALLEST: f64 = 0.1e-12;
-    const N_STEPS: i32 = 52;
-    (0..N_STEPS).map(|k| Piece::Flat {
-        weight: 1.0 / f64::from(N_STEPS),
-        low: SMALLEST * quarter_decades(k),
-        high: SMALLEST * quarter_decades(k + 1),
-    })
+    const N_STEPS: usize = 52;
+    steps(SMALLEST, 1.0, N_STEPS)
+}
+
+/// Steps of a quarter decade from `start` up, of equal weight, flat inside a step.
+fn steps(start: f64, weight: f64, n_steps: usize) -> impl Iterator<Item = Piece> {
+    let edges = &*QUARTER_DECADES;
+    edges
+        .iter()
+        .zip(&edges[1..])
+        .take(n_steps)
+        .map(move |(low, high)| Piece::Flat {
+            weight: weight / n_steps as f64,
+            low: start * low,
+            high: start * high,
+        })
 }
 
 /// The evidence of "none of these readings".
@@ -190,21 +198,9 @@ pub(super) fn unmarked_evidence(c: f64, u: f64) -> f64 {
         .sum()
 }
 
-fn tail_edge(m: f64, k: i32) -> f64 {
-    0.01 * m * quarter_decades(k)
-}
-
-/// 10^(k/4) for k from 0.
-fn quarter_decades(k: i32) -> f64 {
-    const QUARTERS: [f64; 4] = [
-        1.0,
-        1.778_279_410_038_922_8,
-        3.162_277_660_168_379_5,
-        5.623_413_251_903_491,
-    ];
-    let quarter = usize::try_from(k.rem_euclid(4)).unwrap_or(0);
-    10f64.powi(k.div_euclid(4)) * QUARTERS[quarter]
-}
+/// 10^(k/4) for k from 0 to 52.
+static QUARTER_DECADES: LazyLock<[f64; 53]> =
+    LazyLock::new(|| std::array::from_fn(|k| 10f64.powf(0.25 * k as f64)));
 
 #[cfg(test)]
 mod tests {

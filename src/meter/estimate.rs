@@ -6,12 +6,10 @@
 //! about 1e-12, so that they are good to some 1e-3 of themselves.
 
 use super::arc::{Chord, chord};
-use super::balance::{
-    DarkSpan, DialLaw, Roots, Side, part_from_dimmest, part_from_edge, part_from_middle,
-    parts_with_edge,
-};
-use super::circuit::{Circuit, Constants, Load};
+use super::balance::{DialLaw, Side};
+use super::circuit::{Constants, Load};
 use super::model::{Model, N_CONSTANTS};
+use super::route::{Route, Ways, other};
 use super::{
     AssumedLoss, Contribution, DialReading, Edge, Estimate, Lamp, LossSeen, Measured, Meter, Part,
     Repeats, Seen, Source, Stop, Switch, Value,
@@ -28,8 +26,8 @@ const QUANTILE_95: f64 = 1.645;
 pub fn measure(meter: &Meter, switch: Switch, seen: Seen, part: &Part) -> Measured {
     let bench = Bench {
         meter,
-        circuit: meter.model().circuit(),
         model: meter.model(),
+        ways: Ways::of(meter),
         switch,
     };
     match Plain::of(seen, meter) {
@@ -103,93 +101,16 @@ impl Plain {
     }
 }
 
-/// A way from readings to a capacitance; the readings themselves are kept apart, to be varied.
-#[derive(Clone, Copy)]
-enum Route {
-    Middle,
-    /// The middle of what is seen of an arc that the stop cuts: its free edge lies at twice the reading less the stop.
-    VisibleMiddle(Stop),
-    Edge(Side),
-    Dimmest,
-    /// The smaller or the larger of the two parts with an edge at the reading.
-    Window(Side),
-}
-
 struct Bench<'a> {
     meter: &'a Meter,
-    circuit: &'a Circuit,
     model: &'a Model,
+    ways: Ways<'a>,
     switch: Switch,
 }
 
 impl Bench<'_> {
     fn constants(&self) -> &Constants {
         self.model.constants(self.switch)
-    }
-
-    fn value(&self, route: Route, constants: &Constants, reading: f64, loss: f64) -> Option<f64> {
-        let dial = &self.meter.dial;
-        let r = dial.resistance(reading, constants);
-        match route {
-            Route::Middle => self.part_with_middle(constants, reading, loss),
-            Route::VisibleMiddle(stop) => {
-                let free = 2.0 * reading - dial.number_at(stop).get();
-                let side = dial.side_of(other(stop));
-                part_from_edge(
-                    self.circuit,
-                    constants,
-                    loss,
-                    (side, dial.resistance(free, constants)),
-                )
-            }
-            Route::Edge(side) => part_from_edge(self.circuit, constants, loss, (side, r)),
-            Route::Dimmest => part_from_dimmest(self.circuit, constants, loss, r),
-            Route::Window(side) => {
-                match (parts_with_edge(self.circuit, constants, loss, r), side) {
-                    (Roots::Two(low, _), Side::Lower) => Some(low),
-                    (Roots::Two(_, high), Side::Upper) | (Roots::One(high), Side::Lower) => {
-                        Some(high)
-                    }
-                    _ => None,
-                }
-            }
-        }
-    }
-
-    /// The middle seen is the mean of the edge readings. Where the dial is straight between the edges that is the middle
-    /// in resistance, in closed form; else at most three secant steps on that mean lead to it.
-    fn part_with_middle(&self, constants: &Constants, reading: f64, loss: f64) -> Option<f64> {
-        let dial = &self.meter.dial;
-        let start = part_from_middle(
-            self.circuit,
-            constants,
-            loss,
-            dial.resistance(reading, constants),
-        )?;
-        let middle_of = |c: f64| {
-            let (r1, r2) = DialLaw::of(self.circuit, constants, Load { c, d: loss })
-                .free_edges(constants.vth)?;
-            let (one, other) = (dial.reading(r1, constants), dial.reading(r2, constants));
-            (!dial.is_straight_between(one, other)).then_some(0.5 * (one + other))
-        };
-        let Some(first) = middle_of(start) else {
-            return Some(start);
-        };
-        let error = |c: f64| middle_of(c).map(|m| m - reading);
-        // C follows R: the ratio of resistances gives a second point close to the solution.
-        let ratio = dial.resistance(reading, constants) / dial.resistance(first, constants);
-        let (mut c0, mut e0) = (start, first - reading);
-        let mut c1 = start * ratio.clamp(0.5, 2.0);
-        for _ in 0..3 {
-            let Some(e1) = error(c1) else { return Some(c1) };
-            let next = c1 - e1 * (c1 - c0) / (e1 - e0);
-            // Equal errors, both of them nothing when the start was exact, leave no secant.
-            if !next.is_finite() {
-                return Some(c1);
-            }
-            (c0, e0, c1) = (c1, e1, next.clamp(0.5 * start, 2.0 * start));
-        }
-        Some(c1)
     }
 
     fn middle(&self, repeats: Repeats, loss: AssumedLoss) -> Measured {
@@ -203,26 +124,24 @@ impl Bench<'_> {
         )
     }
 
-    /// Whether a stop cuts the arc of the part found; then the middle seen was that of the visible piece.
+    /// Whether a stop cuts the arc of the part found (then the middle seen was that of the visible piece) or the dial
+    /// bends within it.
     fn route_of_middle(&self, reading: f64, loss: f64) -> Route {
         let constants = self.constants();
-        let Some(c) = self.value(Route::Middle, constants, reading, loss) else {
+        let dial = &self.meter.dial;
+        let Some(c) = self.ways.value(Route::Middle, constants, reading, loss) else {
             return Route::Middle;
         };
-        let span = self.meter.dial.span(constants);
-        let law = DialLaw::of(self.circuit, constants, Load { c, d: loss });
-        match law.dark_span(constants.vth, span) {
-            Some(DarkSpan {
-                cut_low: true,
-                cut_high: false,
-                ..
-            }) => Route::VisibleMiddle(self.meter.dial.stop_at(Side::Lower)),
-            Some(DarkSpan {
-                cut_low: false,
-                cut_high: true,
-                ..
-            }) => Route::VisibleMiddle(self.meter.dial.stop_at(Side::Upper)),
-            _ => Route::Middle,
+        let Some((one, other)) = self.ways.edges(constants, Load { c, d: loss }) else {
+            return Route::Middle;
+        };
+        let is_cut_low = one.min(other) <= dial.low.get();
+        let is_cut_high = dial.high.get() <= one.max(other);
+        match (is_cut_low, is_cut_high) {
+            (true, false) => Route::VisibleMiddle(Stop::Low),
+            (false, true) => Route::VisibleMiddle(Stop::High),
+            _ if dial.is_straight_between(one, other) => Route::Middle,
+            _ => Route::BentMiddle,
         }
     }
 
@@ -239,21 +158,19 @@ impl Bench<'_> {
     /// A value from one number read.
     fn single(&self, route: Route, reading: f64, u_reading: f64, loss: AssumedLoss) -> Measured {
         let constants = self.constants();
-        let Some(c) = self.value(route, constants, reading, loss.value) else {
+        let Some(c) = self.ways.value(route, constants, reading, loss.value) else {
             return self.nothing(Value::Open);
         };
-        let of_reading = self.value(route, constants, reading + STEP * u_reading, loss.value);
-        let of_loss = self.value(
-            route,
-            constants,
-            reading,
-            loss.value + loss.standard_uncertainty,
-        );
+        let moved = self
+            .ways
+            .near(route, constants, reading, Load { c, d: loss.value });
+        let of_reading = moved(constants, reading + STEP * u_reading, loss.value);
+        let of_loss = moved(constants, reading, loss.value + loss.standard_uncertainty);
         let own = [
             (Source::Reading, difference(of_reading, c) / STEP),
             (Source::Loss, difference(of_loss, c)),
         ];
-        let common = self.gradient(|k| self.value(route, k, reading, loss.value), c);
+        let common = self.gradient(|k| moved(k, reading, loss.value), c);
         self.estimate(c, &common, &own, LossSeen::default())
     }
 
@@ -290,7 +207,7 @@ impl Bench<'_> {
     fn chord(&self, constants: &Constants, r1: f64, r2: f64) -> Option<Chord> {
         let dial = &self.meter.dial;
         chord(
-            self.circuit,
+            self.model.circuit(),
             constants,
             (
                 dial.resistance(r1, constants),
@@ -301,10 +218,9 @@ impl Bench<'_> {
 
     /// The width, in dial units, of the arc of a part of this capacitance and the loss that balances best.
     fn arc_without_loss(&self, constants: &Constants, part: Load) -> f64 {
-        let edges = DialLaw::of(self.circuit, constants, part).free_edges(constants.vth);
-        edges.map_or(0.0, |(r1, r2)| {
-            (self.meter.dial.reading(r1, constants) - self.meter.dial.reading(r2, constants)).abs()
-        })
+        self.ways
+            .edges(constants, part)
+            .map_or(0.0, |(one, other)| (one - other).abs())
     }
 
     /// Never dark: the place is as uncertain as the dimness is shallow, and the loss is at least what keeps the lamp lit.
@@ -318,11 +234,14 @@ impl Bench<'_> {
             value: (1.5 * least).max(loss.value),
             standard_uncertainty: (0.5 * least).max(loss.standard_uncertainty),
         };
-        let Some(c) = self.value(Route::Dimmest, constants, reading, assumed.value) else {
+        let Some(c) = self
+            .ways
+            .value(Route::Dimmest, constants, reading, assumed.value)
+        else {
             return self.nothing(Value::Open);
         };
         let law = DialLaw::of(
-            self.circuit,
+            self.model.circuit(),
             constants,
             Load {
                 c,
@@ -346,8 +265,11 @@ impl Bench<'_> {
         let constants = self.constants();
         let r = self.meter.dial.resistance(reading, constants);
         let excess = |d: f64| -> Option<f64> {
-            let c = part_from_dimmest(self.circuit, constants, d, r)?;
-            Some(DialLaw::of(self.circuit, constants, Load { c, d }).difference(r) - constants.vth)
+            let c = self.ways.value(Route::Dimmest, constants, reading, d)?;
+            Some(
+                DialLaw::of(self.model.circuit(), constants, Load { c, d }).difference(r)
+                    - constants.vth,
+            )
         };
         let (mut low, mut at_low) = (0.0, excess(0.0)?);
         if at_low >= 0.0 {
@@ -485,13 +407,6 @@ fn loss_of(found: &Chord, u_w: f64, usual_loss: f64) -> (LossSeen, f64) {
         below: None,
     };
     (seen, chosen.c)
-}
-
-fn other(stop: Stop) -> Stop {
-    match stop {
-        Stop::Low => Stop::High,
-        Stop::High => Stop::Low,
-    }
 }
 
 /// The change of a value; a value that ceases to exist counts as no change.

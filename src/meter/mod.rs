@@ -1,4 +1,7 @@
-//! The balance meter: profile in, predictions and estimates out.
+//! The balance meter: a profile goes in, and with it predictions (where does a part null?) and estimates (what does a
+//! reading mean?) come out.
+//!
+//! [`predict`] and [`measure`] are the two calls; `circuit.rs` and `balance.rs` derive what they rest on.
 
 mod arc;
 mod balance;
@@ -10,10 +13,13 @@ mod part;
 mod predict;
 mod profile;
 mod read;
+mod read_calibration;
+mod read_dial;
+mod route;
 mod seen;
 
 pub use estimate::measure;
-pub use predict::{best_switch, predict};
+pub use predict::{Null, best_switch, null, predict};
 
 pub use part::{
     AssumedLoss, Band, Caution, Contribution, Cut, DarkArc, Estimate, LossSeen, Measured, Part,

@@ -28,7 +28,7 @@ pub fn predict(meter: &Meter, switch: Switch, part: &Part) -> Prediction {
         cautions.push(Caution::OutOfSpan { stop, better });
     } else if sight.arc.is_none() {
         cautions.push(Caution::NeverDark {
-            residual: Volt::new(sight.residual),
+            residual: sight.residual,
         });
     } else if let Some(DarkArc {
         cut: Cut::At(stop), ..
@@ -40,7 +40,7 @@ pub fn predict(meter: &Meter, switch: Switch, part: &Part) -> Prediction {
         switch,
         balance: sight.balance,
         beyond: sight.beyond,
-        residual: Volt::new(sight.residual),
+        residual: sight.residual,
         dark: sight.arc,
         expected: sight.arc.map(middle),
         band,
@@ -58,7 +58,7 @@ pub fn best_switch(meter: &Meter, part: &Part) -> Switch {
         let sight = view.sight(part.capacitance, part);
         match (sight.beyond, uncertainty(meter, switch, &sight, part)) {
             (None, Some(u)) => (0, u.get()),
-            (None, None) => (1, sight.residual),
+            (None, None) => (1, sight.residual.get()),
             (Some(stop), _) => (2, view.distance_beyond(stop, part.capacitance)),
         }
     };
@@ -75,13 +75,24 @@ struct View<'a> {
     constants: &'a Constants,
 }
 
-/// What a part shows on one switch.
-struct Sight {
-    balance: DialReading,
-    beyond: Option<Stop>,
-    residual: f64,
-    arc: Option<DarkArc>,
-    part_voltage: Volt,
+/// Where a part nulls on one switch, without limits and uncertainties.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Null {
+    /// Where the difference is least within the travel.
+    pub balance: DialReading,
+    /// The stop beyond which the free optimum lies, if it does.
+    pub beyond: Option<Stop>,
+    /// The least difference, peak.
+    pub residual: Volt,
+    /// The dark arc; `None` if the lamp never goes dark.
+    pub arc: Option<DarkArc>,
+    /// The voltage the part sees at balance, peak.
+    pub part_voltage: Volt,
+}
+
+/// Returns where the part nulls on this switch: a few hundred floating-point operations.
+pub fn null(meter: &Meter, switch: Switch, part: &Part) -> Null {
+    View::of(meter, switch).sight(part.capacitance, part)
 }
 
 impl<'a> View<'a> {
@@ -92,7 +103,7 @@ impl<'a> View<'a> {
         }
     }
 
-    fn sight(&self, capacitance: Farad, part: &Part) -> Sight {
+    fn sight(&self, capacitance: Farad, part: &Part) -> Null {
         let circuit = self.meter.model().circuit();
         let dial = &self.meter.dial;
         let load = Load {
@@ -121,10 +132,10 @@ impl<'a> View<'a> {
                 cut,
             }
         });
-        Sight {
+        Null {
             balance: self.reading(r),
             beyond: beyond.map(|side| dial.stop_at(side)),
-            residual,
+            residual: Volt::new(residual),
             arc,
             part_voltage: Volt::new(unknown.part.norm()),
         }
@@ -178,7 +189,7 @@ impl<'a> View<'a> {
 }
 
 /// The relative standard uncertainty of a single reading where the part is expected.
-fn uncertainty(meter: &Meter, switch: Switch, sight: &Sight, part: &Part) -> Option<Fraction> {
+fn uncertainty(meter: &Meter, switch: Switch, sight: &Null, part: &Part) -> Option<Fraction> {
     let seen = match (sight.arc, sight.beyond) {
         (Some(arc), _) if arc.cut != Cut::Both => Seen::Middle(Repeats::once(middle(arc))),
         (Some(_), _) | (None, Some(_)) => return None,

@@ -1,22 +1,14 @@
 //! From the text of a profile to a meter, every mistake reported with its place.
 
-use std::ops::Range;
-
-use toml::de::DeValue;
-
-use super::model::{Fit, Model, N_CONSTANTS};
-use super::{
-    Calibration, CheckPart, Degrees, Dial, DialReading, Difference, Meter, RangeSwitch, Reference,
-    Taper,
-};
+use super::model::Model;
+use super::read_calibration::read_calibration;
+use super::read_dial::read_dial;
+use super::{CheckPart, Difference, Meter, RangeSwitch, Reference};
 use crate::quantity::{Farad, Fraction, Hertz, Ohm, Volt};
 use crate::tables::document::{Bound, Complaint, Document, Need, Placed, Section, tree};
 
 const MOST_SWITCHES: usize = 8;
 const MOST_CHECK_PARTS: usize = 100;
-const MOST_POINTS: usize = 1000;
-/// Rotation of an ordinary single-turn potentiometer in degrees (common practice, no source).
-const USUAL_SWEEP: f64 = 270.0;
 
 const ROOT: [&str; 13] = [
     "name",
@@ -207,14 +199,18 @@ fn read_switches(document: &mut Document<'_>, root: &Section<'_>) -> Option<Vec<
 }
 
 /// An optional tolerance, below 100 %.
-fn read_tolerance(document: &mut Document<'_>, section: &Section<'_>) -> Fraction {
+pub(super) fn read_tolerance(document: &mut Document<'_>, section: &Section<'_>) -> Fraction {
     let Some(tolerance) = document.fraction(section, "tolerance", Need::Optional) else {
         return Fraction::new(0.0);
     };
     below_one(document, &tolerance, "tolerance")
 }
 
-fn below_one(document: &mut Document<'_>, fraction: &Placed<Fraction>, key: &str) -> Fraction {
+pub(super) fn below_one(
+    document: &mut Document<'_>,
+    fraction: &Placed<Fraction>,
+    key: &str,
+) -> Fraction {
     if fraction.value.get() >= 1.0 {
         document.complain(
             fraction.at.clone(),
@@ -251,200 +247,6 @@ fn read_reference(document: &mut Document<'_>, root: &Section<'_>) -> Option<Ref
         capacitance: capacitance?.value,
         tolerance,
         loss,
-    })
-}
-
-fn read_dial(document: &mut Document<'_>, section: &Section<'_>) -> Option<Dial> {
-    document.check_keys(
-        section,
-        &[
-            "low",
-            "high",
-            "division",
-            "resistance",
-            "end_resistance",
-            "tolerance",
-            "points",
-            "point_uncertainty",
-            "sweep",
-        ],
-    );
-    let low = document.number(section, "low", Bound::NotNegative, Need::Required);
-    let high = document.number(section, "high", Bound::Positive, Need::Required);
-    let division = document.number(section, "division", Bound::Positive, Need::Required);
-    let sweep = document.number(section, "sweep", Bound::Any, Need::Optional);
-    if let Some(sweep) = &sweep
-        && (sweep.value == 0.0 || sweep.value.abs() > 360.0)
-    {
-        let message = format!(
-            "`sweep` is {}; accepted here: -360 to 360 degrees, not 0",
-            sweep.value
-        );
-        document.complain(sweep.at.clone(), message);
-    }
-    let sweep = sweep.map_or(USUAL_SWEEP, |s| s.value);
-    if let (Some(low), Some(high)) = (&low, &high) {
-        if low.value >= high.value {
-            let message = format!(
-                "`high` is {}; accepted here: above `low`, which is {}",
-                high.value, low.value
-            );
-            document.complain(high.at.clone(), message);
-        } else if let Some(division) = division
-            .as_ref()
-            .filter(|d| d.value > high.value - low.value)
-        {
-            let message = format!("`division` is {}, more than the whole dial", division.value);
-            document.complain(division.at.clone(), message);
-        }
-    }
-    let ends = low
-        .as_ref()
-        .zip(high.as_ref())
-        .map(|(low, high)| (low.value, high.value));
-    let taper = read_taper(document, section, ends);
-    Some(Dial {
-        low: DialReading::new(low?.value),
-        high: DialReading::new(high?.value),
-        division: division?.value,
-        taper: taper?,
-        sweep: Degrees(sweep),
-    })
-}
-
-fn read_taper(
-    document: &mut Document<'_>,
-    section: &Section<'_>,
-    ends: Option<(f64, f64)>,
-) -> Option<Taper> {
-    const LINEAR: [&str; 3] = ["resistance", "end_resistance", "tolerance"];
-    let points_at = section.place_of("points");
-    let linear_at = LINEAR
-        .iter()
-        .find_map(|key| section.place_of(key).map(|at| (*key, at)));
-    match (points_at, linear_at) {
-        (Some(points_at), Some((key, at))) => {
-            let (one, other) = (document.line_of(&points_at), document.line_of(&at));
-            let message = format!(
-                "`points` (line {one}) and `{key}` (line {other}) are both given; accepted here: either measured points or a linear taper"
-            );
-            document.complain(points_at, message);
-            None
-        }
-        (Some(_), None) => {
-            let points = read_points(document, section, ends);
-            let uncertainty = document.fraction(section, "point_uncertainty", Need::Optional);
-            let uncertainty = uncertainty.map_or(Fraction::new(0.0), |u| {
-                below_one(document, &u, "point_uncertainty")
-            });
-            Some(Taper::Points {
-                points: points?,
-                uncertainty,
-            })
-        }
-        (None, _) => {
-            if let Some(at) = section.place_of("point_uncertainty") {
-                document.complain(
-                    at,
-                    "`point_uncertainty` belongs to `points`, which are not given".into(),
-                );
-            }
-            let total =
-                document.quantity::<Ohm>(section, "resistance", Bound::Positive, Need::Required);
-            let end = document.quantity::<Ohm>(
-                section,
-                "end_resistance",
-                Bound::NotNegative,
-                Need::Required,
-            );
-            let tolerance = read_tolerance(document, section);
-            Some(Taper::Linear {
-                total: total?.value,
-                end: end?.value,
-                tolerance,
-            })
-        }
-    }
-}
-
-fn read_points(
-    document: &mut Document<'_>,
-    section: &Section<'_>,
-    ends: Option<(f64, f64)>,
-) -> Option<Vec<(DialReading, Ohm)>> {
-    let items = document.items(section, "points", MOST_POINTS, Need::Required)?;
-    let mut points: Vec<(f64, f64, Range<usize>)> = Vec::new();
-    for item in &items.value {
-        let DeValue::Array(pair) = item.get_ref() else {
-            document.complain(
-                item.span(),
-                "a point is a pair; accepted here: [reading, \"resistance\"]".into(),
-            );
-            return None;
-        };
-        let (Some(reading), Some(resistance), 2) = (pair.first(), pair.get(1), pair.len()) else {
-            document.complain(
-                item.span(),
-                "a point is a pair; accepted here: [reading, \"resistance\"]".into(),
-            );
-            return None;
-        };
-        let reading = document.number_value(reading, "points", Bound::Any);
-        let resistance = document.quantity_value::<Ohm>(resistance, "points", Bound::NotNegative);
-        points.push((reading?.value, resistance?.value.get(), item.span()));
-    }
-    let (Some(first), Some(last)) = (points.first(), points.last()) else {
-        document.complain(
-            items.at,
-            "`points` is empty; accepted here: at least the two ends of the dial".into(),
-        );
-        return None;
-    };
-    let is_rising = last.1 > first.1;
-    let mut are_fine = points.len() > 1;
-    if !are_fine {
-        document.complain(
-            items.at.clone(),
-            "`points` has one point; accepted here: at least the two ends of the dial".into(),
-        );
-    }
-    for (before, after) in points.iter().zip(points.iter().skip(1)) {
-        let message = if after.0 <= before.0 {
-            format!(
-                "reading {} stands after {}; accepted here: points by rising reading",
-                after.0, before.0
-            )
-        } else if !(if is_rising {
-            before.1 < after.1
-        } else {
-            after.1 < before.1
-        }) {
-            let trend = if is_rising { "rise" } else { "fall" };
-            format!(
-                "at {} the resistance is {} after {}; accepted here: resistances that {trend} all the way",
-                after.0,
-                Ohm::new(after.1),
-                Ohm::new(before.1)
-            )
-        } else {
-            continue;
-        };
-        document.complain(after.2.clone(), message);
-        are_fine = false;
-    }
-    if let Some((low, high)) = ends.filter(|(low, high)| first.0 > *low || last.0 < *high) {
-        let message = format!(
-            "`points` go from {} to {}; accepted here: points that cover the dial, {low} to {high}",
-            first.0, last.0
-        );
-        document.complain(items.at, message);
-        are_fine = false;
-    }
-    are_fine.then(|| {
-        points
-            .into_iter()
-            .map(|(x, r, _)| (DialReading::new(x), Ohm::new(r)))
-            .collect()
     })
 }
 
@@ -531,166 +333,4 @@ fn read_check_parts(document: &mut Document<'_>, root: &Section<'_>) -> Vec<Chec
         }
     }
     parts
-}
-
-fn read_calibration(
-    document: &mut Document<'_>,
-    section: &Section<'_>,
-    meter: &Meter,
-) -> Option<(Calibration, Placed<String>)> {
-    document.check_keys(
-        section,
-        &[
-            "date",
-            "profile_hash",
-            "observations",
-            "reduced_chi_square",
-            "names",
-            "estimate",
-            "covariance",
-        ],
-    );
-    let date = document
-        .get(section, "date", Need::Required)
-        .map(|value| match value.get_ref() {
-            DeValue::Datetime(date) => date.to_string(),
-            other => other.as_str().unwrap_or_default().to_owned(),
-        });
-    let hash = document.text_of(section, "profile_hash", Need::Required);
-    let observations = document.count(section, "observations", 0..=u32::MAX, Need::Required);
-    let reduced = document.number(
-        section,
-        "reduced_chi_square",
-        Bound::NotNegative,
-        Need::Required,
-    );
-    let fit = read_fit(document, section, meter);
-    let calibration = Calibration {
-        date: date?,
-        observations: observations?,
-        reduced_chi_square: reduced?.value,
-        fit: fit?,
-    };
-    Some((calibration, hash?))
-}
-
-fn read_fit(document: &mut Document<'_>, section: &Section<'_>, meter: &Meter) -> Option<Fit> {
-    let mut expected: Vec<String> = meter.switches.iter().map(|s| s.label.clone()).collect();
-    expected.extend(["reference", "dial_total"].map(str::to_owned));
-    if matches!(meter.dial.taper, Taper::Linear { .. }) {
-        expected.push("dial_end".to_owned());
-    }
-    expected.extend(["stray", "threshold"].map(str::to_owned));
-    let n = expected.len();
-    let names = document.items(section, "names", n + 1, Need::Required)?;
-    let found: Vec<&str> = names
-        .value
-        .iter()
-        .filter_map(|name| name.get_ref().as_str())
-        .collect();
-    if found != expected {
-        let message = format!(
-            "`names` do not fit this meter; accepted here: {}",
-            expected.join(", ")
-        );
-        document.complain(names.at, message);
-        return None;
-    }
-    let estimate = read_row(document, section, "estimate", n);
-    let rows = document.items(section, "covariance", n + 1, Need::Required)?;
-    let mut covariance = Vec::new();
-    for row in &rows.value {
-        let items: Vec<_> = row
-            .get_ref()
-            .as_array()
-            .map(|a| a.iter().collect())
-            .unwrap_or_default();
-        covariance.push(numbers(document, &items, "covariance")?);
-    }
-    if covariance.len() != n || covariance.iter().any(|row| row.len() != n) {
-        document.complain(
-            rows.at,
-            format!("`covariance` is not {n} rows of {n} numbers"),
-        );
-        return None;
-    }
-    if !is_covariance(&covariance) {
-        document.complain(
-            rows.at,
-            "`covariance` is not symmetric with positive variances and correlations from -1 to 1"
-                .into(),
-        );
-        return None;
-    }
-    let at = |name: &str| expected.iter().position(|e| e == name);
-    let places = (0..meter.switches.len())
-        .map(|position| {
-            let places: [Option<usize>; N_CONSTANTS] = [
-                Some(position),
-                at("reference"),
-                at("dial_total"),
-                at("dial_end"),
-                at("stray"),
-                at("threshold"),
-            ];
-            places
-        })
-        .collect();
-    Some(Fit {
-        estimate: estimate?,
-        covariance,
-        places,
-    })
-}
-
-fn read_row(
-    document: &mut Document<'_>,
-    section: &Section<'_>,
-    key: &str,
-    n: usize,
-) -> Option<Vec<f64>> {
-    let items = document.items(section, key, n + 1, Need::Required)?;
-    let row = numbers(document, &items.value, key)?;
-    if row.len() != n {
-        document.complain(
-            items.at,
-            format!(
-                "`{key}` has {} numbers; accepted here: {n}, one for each name",
-                row.len()
-            ),
-        );
-        return None;
-    }
-    Some(row)
-}
-
-fn numbers(
-    document: &mut Document<'_>,
-    items: &[&toml::Spanned<DeValue<'_>>],
-    key: &str,
-) -> Option<Vec<f64>> {
-    items
-        .iter()
-        .map(|item| {
-            document
-                .number_value(item, key, Bound::Any)
-                .map(|n| n.value)
-        })
-        .collect()
-}
-
-/// Variances positive, correlations symmetric and at most 1 to a part in a million.
-fn is_covariance(rows: &[Vec<f64>]) -> bool {
-    let deviations: Vec<f64> = rows
-        .iter()
-        .enumerate()
-        .map(|(i, row)| row[i].sqrt())
-        .collect();
-    deviations.iter().all(|d| *d > 0.0)
-        && rows.iter().enumerate().all(|(i, row)| {
-            row.iter().enumerate().all(|(j, v)| {
-                let scale = deviations[i] * deviations[j];
-                (v - rows[j][i]).abs() <= 1e-6 * scale && v.abs() <= (1.0 + 1e-6) * scale
-            })
-        })
 }
