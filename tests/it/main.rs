@@ -4,6 +4,7 @@ mod balance;
 mod example;
 mod judge;
 mod layers;
+mod logs;
 mod planted;
 mod profiles;
 mod tables;
