@@ -36,7 +36,7 @@ pub fn judge(
         return case.without_reading(ranked);
     };
     let reading = &decoding.readings[index];
-    case.decide(&ranked, index, reading)
+    case.decide(ranked, index, reading)
 }
 
 /// All that a finding rests on.
@@ -171,7 +171,7 @@ impl Case<'_> {
         }
     }
 
-    fn decide(&self, ranked: &Ranked, index: usize, reading: &Reading) -> Verdict {
+    fn decide(&self, ranked: Ranked, index: usize, reading: &Reading) -> Verdict {
         let measured = self.observation.measured;
         let weighed = &ranked.weighed[index];
         let part = expect(reading, self.rules);
@@ -193,7 +193,7 @@ impl Case<'_> {
         } else if let Some(probability) = self.deciding_probability(weighed).filter(|_| is_weighed)
         {
             let word = word_of(probability, self.rules);
-            let (word, why, slip) = self.withheld(word, ranked, index, &part);
+            let (word, why, slip) = self.withheld(word, &ranked, index, &part);
             remarks.extend(why);
             found_slip = slip;
             word
@@ -230,7 +230,7 @@ impl Case<'_> {
             probability_inside: probability,
             probability_flat: weighed.probability_flat.filter(|_| is_weighed),
             reading_probability: Some(ranked.posterior(index)),
-            ranking: ranked.ranking.clone(),
+            ranking: ranked.ranking,
             slip: found_slip,
             value: match word {
                 Word::Inside => Tested::Ok,

@@ -18,10 +18,17 @@ pub(super) fn cumulative(x: f64) -> f64 {
 
 /// Φ(high) - Φ(low), taken on the side where both are small.
 pub(super) fn between(low: f64, high: f64) -> f64 {
-    if low > 0.0 {
-        cumulative(-low) - cumulative(-high)
+    /// So much farther out (both below zero) the smaller of the two is below 1e-20 of the larger.
+    const NEGLIGIBLE: f64 = 10.0;
+    let (near, far) = if low > 0.0 {
+        (-low, -high)
     } else {
-        cumulative(high) - cumulative(low)
+        (high, low)
+    };
+    if far < near.min(0.0) - NEGLIGIBLE {
+        cumulative(near)
+    } else {
+        cumulative(near) - cumulative(far)
     }
 }
 

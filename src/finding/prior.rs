@@ -58,6 +58,9 @@ pub(super) struct Interval {
 
 const N_TAIL_STEPS: usize = 12;
 
+/// A step farther from the measured value than so many standard uncertainties holds less than 1e-30 of it.
+const REACH: f64 = 12.0;
+
 impl Prior {
     pub(super) fn of(nominal: Farad, made_to: Tolerance, rules: &HouseRules) -> Self {
         let nominal = nominal.get();
@@ -128,7 +131,7 @@ impl Piece {
                 }
             }
             Self::Flat { weight, low, high } => {
-                let reach = 38.0 * u;
+                let reach = REACH * u;
                 if weight == 0.0 || c + reach < low || high < c - reach {
                     return Evidence::default();
                 }

@@ -5,54 +5,17 @@
 //! repeats what is there, or contradicts it, which is punished and named. What no piece explains is skipped at a cost. At
 //! each cell only the [`WIDTH`] best paths go on.
 
-use super::lexicon::{ByKind, Lexicon, agree, more_precise};
-use super::piece::{Class, Form, Meaning, Piece, Pieces, Voltage};
+use super::lexicon::Lexicon;
+use super::path::{NONE, Path, START};
+use super::piece::{Meaning, Piece, Pieces, Voltage};
+use super::rules_for;
 use super::scan::{MOST_CELLS, Scan, Sort};
-use super::{Rule, rules_for};
-use crate::tables::{Factors, Family, KINDS, TABLES, VoltageKind};
+use crate::tables::{Factors, Family, TABLES};
 
 /// How many paths go on from a cell.
-const WIDTH: usize = 24;
-
-/// No piece.
-pub(super) const NONE: u16 = u16::MAX;
-
-/// A way of explaining the text up to a cell.
-#[derive(Clone, Copy)]
-pub(super) struct Path {
-    /// The last step.
-    step: u32,
-    next: u32,
-    /// The product of all factors that do not depend on the kind.
-    pub(super) weight: f64,
-    /// The product of prior and evidence, by kind.
-    pub(super) kinds: ByKind,
-    /// The cells left unexplained.
-    pub(super) unexplained: u128,
-    /// What was found.
-    pub(super) slots: Slots,
-}
-
-/// What a path found: places in the list of pieces, [`NONE`] where nothing.
-#[derive(Clone, Copy)]
-pub(super) struct Slots {
-    /// The value.
-    pub(super) value: u16,
-    /// The tolerance.
-    pub(super) tolerance: u16,
-    /// The voltages.
-    pub(super) voltages: [u16; 2],
-    /// The characteristic.
-    pub(super) characteristic: u16,
-    /// The digit of the X class, 0 for none.
-    pub(super) x: u8,
-    /// The digit of the Y class, 0 for none.
-    pub(super) y: u8,
-    /// The family given or found.
-    pub(super) family: Option<Family>,
-    /// A piece that contradicts an earlier one.
-    pub(super) contradicts: u16,
-}
+const WIDTH: usize = 16;
+/// Paths that are this much less probable than the best of their cell, of those with or without a value, end there.
+const HOPELESS: f64 = 3e-5;
 
 #[derive(Clone, Copy)]
 struct Step {
@@ -72,8 +35,6 @@ pub(super) struct Beam<'a, 't> {
     pub(super) finished: Vec<Path>,
     steps: Vec<Step>,
 }
-
-const START: u32 = u32::MAX;
 
 /// Explains the whole text in every way that the width allows.
 pub(super) fn search<'a, 't>(
@@ -101,7 +62,7 @@ pub(super) fn search<'a, 't>(
         }
         let first = pieces.list.len();
         for rule in rules_for(scan.at(cell)) {
-            propose(*rule, scan, cell, lexicon, &mut pieces);
+            rule(scan, cell, lexicon, &mut pieces);
         }
         search.skip(cell, &mut pieces);
         for (offset, piece) in pieces
@@ -129,10 +90,6 @@ pub(super) fn search<'a, 't>(
         finished,
         steps: search.steps,
     }
-}
-
-fn propose(rule: Rule, scan: &Scan<'_>, cell: usize, lexicon: &Lexicon, pieces: &mut Pieces) {
-    rule(scan, cell, lexicon, pieces);
 }
 
 impl Beam<'_, '_> {
@@ -187,14 +144,21 @@ impl Search<'_, '_> {
     /// Lists the best paths of a cell.
     fn best_at(&self, cell: usize, live: &mut Vec<u32>) {
         live.clear();
+        // Paths with and without a value are not measured against each other: the value may still come.
+        let mut best = [0.0f64; 2];
         let mut next = self.heads.get(cell).copied().unwrap_or(START);
         while let Some(path) = self.paths.get(index(next)) {
             live.push(next);
+            let slot = &mut best[usize::from(path.slots.value == NONE)];
+            *slot = slot.max(path.mass);
             next = path.next;
         }
+        let mass = |path: u32| self.paths.get(index(path)).map_or(0.0, |path| path.mass);
+        let is_hopeful =
+            |path: &Path| path.mass >= HOPELESS * best[usize::from(path.slots.value == NONE)];
+        live.retain(|&path| self.paths.get(index(path)).is_some_and(is_hopeful));
         if live.len() > WIDTH {
-            let mass = |&path: &u32| self.paths.get(index(path)).map_or(0.0, Path::mass);
-            live.sort_by(|a, b| mass(b).total_cmp(&mass(a)));
+            live.select_nth_unstable_by(WIDTH, |&a, &b| mass(b).total_cmp(&mass(a)));
             live.truncate(WIDTH);
         }
     }
@@ -215,7 +179,7 @@ impl Search<'_, '_> {
             Sort::Blank | Sort::Sign => factors.unexplained_sign,
         };
         let touches = |cell: usize| matches!(scan.sort(cell), Sort::Digit | Sort::Letter);
-        if sort != Sort::Sign && (touches(cell.wrapping_sub(1)) || touches(end)) {
+        if touches(cell.wrapping_sub(1)) || touches(end) {
             weight *= factors.unexplained_touching;
         }
         pieces.push((cell, end), Meaning::Unexplained, neutral, weight);
@@ -223,9 +187,17 @@ impl Search<'_, '_> {
 
     /// Adds the path with one more piece, if the two go together at all.
     fn extend(&mut self, number: u32, place: u16, piece: &Piece, pieces: &[Piece]) {
-        let Some(mut path) = self.paths.get(index(number)).copied() else {
+        let Some(from) = self.paths.get(index(number)) else {
             return;
         };
+        // A second value is the usual case at a number behind the first, so it is refused before anything is copied.
+        if let Meaning::Value(_) = piece.meaning
+            && let Some(taken) = pieces.get(usize::from(from.slots.value))
+            && taken.meaning != piece.meaning
+        {
+            return;
+        }
+        let mut path = *from;
         if !path.take(place, piece, pieces, self.lexicon, self.factors) {
             return;
         }
@@ -236,7 +208,8 @@ impl Search<'_, '_> {
                 .zip(&reason.on)
                 .for_each(|(kind, on)| *kind *= on);
         }
-        if path.kinds.iter().all(|&kind| kind <= 0.0) {
+        path.mass = path.weight * path.kinds.iter().sum::<f64>();
+        if path.mass <= 0.0 {
             return;
         }
         let before = path.step;
@@ -246,165 +219,6 @@ impl Search<'_, '_> {
             before,
         });
         self.add(self.scan.after_blanks(usize::from(piece.end)), path);
-    }
-}
-
-impl Path {
-    fn first(lexicon: &Lexicon, given: Option<Family>) -> Self {
-        let mut kinds = [0.0; KINDS];
-        for (kind, view) in kinds.iter_mut().zip(lexicon.view(given)) {
-            *kind = view.prior;
-        }
-        Self {
-            step: START,
-            next: START,
-            weight: 1.0,
-            kinds,
-            unexplained: 0,
-            slots: Slots {
-                value: NONE,
-                tolerance: NONE,
-                voltages: [NONE; 2],
-                characteristic: NONE,
-                x: 0,
-                y: 0,
-                family: given,
-                contradicts: NONE,
-            },
-        }
-    }
-
-    /// How probable the path is so far, up to a common factor.
-    pub(super) fn mass(&self) -> f64 {
-        self.weight * self.kinds.iter().sum::<f64>()
-    }
-
-    /// Takes a piece into the slots; returns whether that is possible.
-    fn take(
-        &mut self,
-        place: u16,
-        piece: &Piece,
-        pieces: &[Piece],
-        lexicon: &Lexicon,
-        factors: &Factors,
-    ) -> bool {
-        let meaning_of = |place: u16| pieces.get(usize::from(place)).map(|piece| piece.meaning);
-        match piece.meaning {
-            Meaning::Value(_) => {
-                if self.slots.value == NONE {
-                    self.slots.value = place;
-                } else if meaning_of(self.slots.value) == Some(piece.meaning) {
-                    self.weight *= factors.repeated;
-                } else {
-                    return false;
-                }
-            }
-            Meaning::Limits(_) | Meaning::Letter(_) => {
-                if self.slots.value == NONE {
-                    self.weight *= factors.tolerance_first;
-                }
-                if self.slots.tolerance == NONE {
-                    self.slots.tolerance = place;
-                } else if meaning_of(self.slots.tolerance) == Some(piece.meaning) {
-                    self.weight *= factors.repeated;
-                } else {
-                    self.contradict(place, factors);
-                }
-            }
-            Meaning::Voltage(voltage) => {
-                if voltage.form == Form::Bare && self.slots.value == NONE {
-                    self.weight *= factors.bare_voltage_first;
-                }
-                let of = |place: u16| match meaning_of(place) {
-                    Some(Meaning::Voltage(voltage)) => Some(voltage),
-                    _ => None,
-                };
-                self.take_voltage(place, voltage, self.slots.voltages.map(of), factors);
-            }
-            Meaning::Word(row) => return self.take_word(place, row, lexicon, factors),
-            Meaning::Safety(class) => self.take_class(place, class, factors),
-            Meaning::Unexplained => self.unexplained |= piece.mask(),
-            Meaning::Text | Meaning::Separator => {}
-        }
-        true
-    }
-
-    fn contradict(&mut self, place: u16, factors: &Factors) {
-        self.weight *= factors.contradicts;
-        if self.slots.contradicts == NONE {
-            self.slots.contradicts = place;
-        }
-    }
-
-    fn take_voltage(
-        &mut self,
-        place: u16,
-        voltage: Voltage,
-        found: [Option<Voltage>; 2],
-        factors: &Factors,
-    ) {
-        match found {
-            [None, _] => self.slots.voltages[0] = place,
-            [Some(first), None] => {
-                let is_same = first.volts.total_cmp(&voltage.volts).is_eq();
-                let is_ac = |voltage: Voltage| voltage.kind == VoltageKind::Ac;
-                if is_same && first.kind == voltage.kind {
-                    self.weight *= factors.repeated;
-                } else if is_ac(first) || is_ac(voltage) {
-                    self.slots.voltages[1] = place;
-                } else {
-                    self.contradict(place, factors);
-                }
-            }
-            [Some(_), Some(_)] => self.contradict(place, factors),
-        }
-    }
-
-    fn take_word(&mut self, place: u16, row: u16, lexicon: &Lexicon, factors: &Factors) -> bool {
-        let Some(word) = lexicon.words.get(usize::from(row)) else {
-            return false;
-        };
-        if word.characteristic.is_some() {
-            if self.slots.characteristic != NONE {
-                self.contradict(place, factors);
-                return true;
-            }
-            self.slots.characteristic = place;
-        }
-        let agrees = self
-            .slots
-            .family
-            .is_none_or(|family| agree(family, word.family));
-        let mut narrowed = self.kinds;
-        narrowed
-            .iter_mut()
-            .zip(&word.kinds)
-            .for_each(|(kind, fits)| *kind *= fits);
-        if !agrees || narrowed.iter().all(|&kind| kind <= 0.0) {
-            self.contradict(place, factors);
-            return true;
-        }
-        self.kinds = narrowed;
-        let family = self
-            .slots
-            .family
-            .map_or(word.family, |family| more_precise(family, word.family));
-        self.slots.family = Some(family);
-        true
-    }
-
-    fn take_class(&mut self, place: u16, class: Class, factors: &Factors) {
-        let (slot, digit) = match class {
-            Class::X(digit) => (&mut self.slots.x, digit),
-            Class::Y(digit) => (&mut self.slots.y, digit),
-        };
-        if *slot == 0 {
-            *slot = digit;
-        } else if *slot == digit {
-            self.weight *= factors.repeated;
-        } else {
-            self.contradict(place, factors);
-        }
     }
 }
 

@@ -3,17 +3,14 @@
 use super::piece::Class;
 use super::scan::{Scan, Sort, glyph, sort};
 use crate::quantity::Tolerance;
-use crate::tables::{
-    ClimatePlace, Dielectric, Family, FamilyWord, KINDS, Multiplier, Place, Ranking, Series, Share,
-    TABLES, ToleranceLetter, VoltageKind, family_facts,
-};
+use crate::tables::{Family, KINDS, Multiplier, Place, Ranking, Series, VoltageKind};
 use std::sync::LazyLock;
 
 /// One figure for each kind of part.
 pub(super) type ByKind = [f64; KINDS];
 
 /// What every rule looks things up in.
-pub(super) static LEXICON: LazyLock<Lexicon> = LazyLock::new(Lexicon::build);
+pub(super) static LEXICON: LazyLock<Lexicon> = LazyLock::new(super::compile::lexicon);
 
 /// Entries found by the first glyph of their word, longer words first.
 pub(super) struct ByFirst<T> {
@@ -44,7 +41,7 @@ pub(super) struct Unit {
 /// A voltage in the lexicon.
 pub(super) struct Volts {
     /// The voltage, or the unit in volt.
-    pub(super) volts: f64,
+    pub(super) scale: f64,
     /// Its kind.
     pub(super) kind: VoltageKind,
     /// The evidence.
@@ -100,7 +97,8 @@ macro_rules! named_evidence {
         pub(super) struct NamedEvidence { $(pub(super) $name: u16,)* }
 
         impl NamedEvidence {
-            fn find(ranking: &Ranking) -> Self {
+            /// Finds the rows.
+            pub(super) fn find(ranking: &Ranking) -> Self {
                 let row = |name| number(ranking.evidence_named(name)
                     .expect("the tests find every row named here"));
                 Self { $($name: row(stringify!($name)),)* }
@@ -159,16 +157,20 @@ pub(super) struct Lexicon {
     pub(super) climate: [Vec<Vec<u8>>; 3],
     /// Multiplier digits.
     pub(super) multipliers: Vec<Multiplier>,
-    rated_volts: Vec<f64>,
-    series: Vec<Option<Series>>,
-    views: Vec<[View; KINDS]>,
+    /// The usual rated voltages, rising.
+    pub(super) rated_volts: Vec<f64>,
+    /// The coarsest series by mantissa, 0 to 999.
+    pub(super) series: Vec<Option<Series>>,
+    /// How the kinds look, by the place that [`view_of`] gives.
+    pub(super) views: Vec<[View; KINDS]>,
 }
 
 impl Lexicon {
-    /// Returns how the kinds look for a family; `None` is a part of which nothing is known.
-    pub(super) fn view(&self, family: Option<Family>) -> &[View; KINDS] {
-        let place = family.map_or(0, |family| place_of(family) + 1);
-        self.views.get(place).unwrap_or(&[NO_VIEW; KINDS])
+    /// Returns how the kinds look, by the place that [`view_of`] gives.
+    pub(super) fn view(&self, place: u8) -> &[View; KINDS] {
+        self.views
+            .get(usize::from(place))
+            .unwrap_or(&[NO_VIEW; KINDS])
     }
 
     /// Returns the coarsest series that has a mantissa from 100 to 999.
@@ -188,177 +190,20 @@ impl Lexicon {
     pub(super) fn reason(&self, evidence: u16) -> Option<&Reason> {
         self.reasons.get(usize::from(evidence))
     }
-
-    fn build() -> Self {
-        let ranking = &TABLES.ranking;
-        let named = NamedEvidence::find(ranking);
-        let mut reasons = Reasons(
-            ranking
-                .evidence
-                .iter()
-                .map(|row| Reason {
-                    on: row.on,
-                    why: row.why.clone(),
-                })
-                .collect(),
-        );
-        let neutral = reasons.add([1.0; KINDS], String::new());
-        let limits = reasons.add([1.0; KINDS], "the tolerance is written out".to_owned());
-        let climate_text = reasons.add(
-            [1.0; KINDS],
-            "a temperature or climatic category (IEC 60068-1)".to_owned(),
-        );
-        let of = |notation: &str| {
-            number(
-                ranking
-                    .evidence_named(notation)
-                    .unwrap_or(usize::from(neutral)),
-            )
-        };
-        let units = TABLES.unit_words().map(|row| {
-            let unit = Unit {
-                exponent: row.exponent,
-                evidence: of(&row.notation),
-                share: row.share,
-                place: Place::Any,
-            };
-            (row.word.clone(), unit)
-        });
-        let points = TABLES.point_letters().map(|row| {
-            let unit = Unit {
-                exponent: row.exponent,
-                evidence: of(&row.notation),
-                share: row.share,
-                place: row.place,
-            };
-            (row.letter.to_string(), unit)
-        });
-        let (units, points) = (ByFirst::new(units), ByFirst::new(points));
-        let mut letters = Vec::new();
-        let mut letter_index = Vec::new();
-        for row in TABLES.tolerance_letters() {
-            let evidence = reasons.add(shares(&row.share), format!("letter {row}"));
-            letter_index.push((row.letter.to_string(), number(letters.len())));
-            letters.push(letter(row, evidence));
-        }
-        let mut voltage_codes = Vec::new();
-        for row in TABLES.voltage_codes() {
-            for &digit in &row.digits {
-                let volts = Volts {
-                    volts: row.voltage(digit).get(),
-                    kind: VoltageKind::Dc,
-                    evidence: named.voltage_code,
-                    share: 1.0,
-                };
-                voltage_codes.push((format!("{digit}{}", row.letter), volts));
-            }
-        }
-        let mut voltage_letters = Vec::new();
-        for row in TABLES.voltage_letters() {
-            let mut on = shares(&row.share);
-            if let Some(base) = reasons.0.get(usize::from(named.voltage_letter)) {
-                on.iter_mut()
-                    .zip(base.on)
-                    .for_each(|(share, base)| *share *= base);
-            }
-            let why = format!("letter {row}, as on chip parts");
-            let volts = Volts {
-                volts: row.volts.get(),
-                kind: VoltageKind::Dc,
-                evidence: reasons.add(on, why),
-                share: 1.0,
-            };
-            voltage_letters.push((row.letter.to_string(), volts));
-        }
-        let voltage_words = ByFirst::new(TABLES.voltage_words().map(|row| {
-            let volts = Volts {
-                volts: row.scale.get(),
-                kind: row.kind,
-                evidence: if row.kind == VoltageKind::Ac {
-                    named.voltage_ac
-                } else {
-                    named.voltage_word
-                },
-                share: 1.0,
-            };
-            (row.word.clone(), volts)
-        }));
-        let voltage_points = ByFirst::new(TABLES.voltage_points().map(|row| {
-            let volts = Volts {
-                volts: row.scale.get(),
-                kind: VoltageKind::Unstated,
-                evidence: named.voltage_word,
-                share: row.share,
-            };
-            (row.letter.to_string(), volts)
-        }));
-        let views = views(ranking);
-        let mut words = Vec::new();
-        let mut word_index = Vec::new();
-        for row in TABLES.family_words() {
-            let evidence = reasons.add(
-                reasons
-                    .0
-                    .get(usize::from(named.family))
-                    .map_or([1.0; KINDS], |r| r.on),
-                format!("word {row}"),
-            );
-            word_index.push((row.word.clone(), number(words.len())));
-            words.push(name(row, evidence, ranking, &views));
-        }
-        Self {
-            named,
-            neutral,
-            limits,
-            climate_text,
-            units,
-            points,
-            letter_index: ByFirst::new(letter_index.into_iter()),
-            letters,
-            limit_words: ByFirst::new(
-                TABLES
-                    .tolerance_words()
-                    .map(|row| (row.word.clone(), (row.limits, row.share))),
-            ),
-            voltage_codes: ByFirst::new(voltage_codes.into_iter()),
-            voltage_letters: ByFirst::new(voltage_letters.into_iter()),
-            voltage_words,
-            voltage_points,
-            word_index: ByFirst::new(word_index.into_iter()),
-            words,
-            classes: ByFirst::new(
-                TABLES
-                    .safety_words()
-                    .filter_map(|row| Some((row.word.clone(), class(&row.word)?))),
-            ),
-            climate: climate(),
-            multipliers: TABLES.multipliers().copied().collect(),
-            rated_volts: rated_volts(),
-            series: series(),
-            views,
-            reasons: reasons.0,
-        }
-    }
 }
 
-const NO_VIEW: View = View {
+/// A kind that is out of the question.
+pub(super) const NO_VIEW: View = View {
     prior: 0.0,
     capacitance: (0.0, 0.0),
     voltage: (0.0, 0.0),
 };
 
-struct Reasons(Vec<Reason>);
-
-impl Reasons {
-    fn add(&mut self, on: ByKind, why: String) -> u16 {
-        self.0.push(Reason { on, why });
-        number(self.0.len() - 1)
-    }
-}
-
 impl<T> ByFirst<T> {
-    fn new(words: impl Iterator<Item = (String, T)>) -> Self {
+    /// Makes the index of words and what they mean.
+    pub(super) fn new(words: impl IntoIterator<Item = (String, T)>) -> Self {
         let mut entries: Vec<Entry<T>> = words
+            .into_iter()
             .map(|(word, meaning)| Entry {
                 glyphs: word.chars().map(glyph).collect(),
                 meaning,
@@ -408,146 +253,13 @@ impl<T> Entry<T> {
     }
 }
 
-fn letter(row: &ToleranceLetter, evidence: u16) -> Letter {
-    Letter {
-        limits: row.limits,
-        below_ten_picofarads: row.below_ten_picofarads,
-        evidence,
-    }
-}
-
-fn name(
-    row: &'static FamilyWord,
-    evidence: u16,
-    ranking: &Ranking,
-    views: &[[View; KINDS]],
-) -> Named {
-    let of_family = views.get(place_of(row.family) + 1);
-    let mut kinds: ByKind = of_family.map_or([0.0; KINDS], |views| {
-        views.map(|view| if view.prior > 0.0 { 1.0 } else { 0.0 })
-    });
-    for (kind, fits) in ranking.kinds.iter().zip(&mut kinds) {
-        if !row.kinds.is_empty() && !row.kinds.contains(&kind.name) {
-            *fits = 0.0;
-        }
-    }
-    Named {
-        family: row.family,
-        characteristic: row.characteristic.as_deref(),
-        kinds,
-        evidence,
-    }
-}
-
-/// The place of a family among all.
-fn place_of(family: Family) -> usize {
-    Family::all().position(|other| other == family).unwrap_or(0)
-}
-
-fn views(ranking: &Ranking) -> Vec<[View; KINDS]> {
-    let families = Family::all().map(Some);
-    std::iter::once(None)
-        .chain(families)
-        .map(|family| view(ranking, family))
-        .collect()
-}
-
-fn view(ranking: &Ranking, family: Option<Family>) -> [View; KINDS] {
-    let mut views = [NO_VIEW; KINDS];
-    for (kind, view) in ranking.kinds.iter().zip(&mut views) {
-        let fits = |&&member: &&Family| {
-            family.is_none_or(|family| member.is_one_of(family) || family.is_one_of(member))
-        };
-        let members: Vec<Family> = kind.families.iter().filter(fits).copied().collect();
-        let facts: Vec<_> = members.iter().map(|&member| family_facts(member)).collect();
-        let part = members.len() as f64 / kind.families.len() as f64;
-        let least = |ends: &mut dyn Iterator<Item = f64>| ends.fold(f64::INFINITY, f64::min);
-        let most = |ends: &mut dyn Iterator<Item = f64>| ends.fold(0.0, f64::max);
-        *view = View {
-            prior: kind.prior * part,
-            capacitance: (
-                least(&mut facts.iter().filter_map(|f| Some(f.usual_range.low?.get()))),
-                most(&mut facts.iter().filter_map(|f| Some(f.usual_range.high?.get()))),
-            ),
-            voltage: (
-                least(
-                    &mut facts
-                        .iter()
-                        .filter_map(|f| Some(f.usual_voltage.low?.get())),
-                ),
-                most(
-                    &mut facts
-                        .iter()
-                        .filter_map(|f| Some(f.usual_voltage.high?.get())),
-                ),
-            ),
-        };
-    }
-    let whole: f64 = views.iter().map(|view| view.prior).sum();
-    if whole > 0.0 {
-        views.iter_mut().for_each(|view| view.prior /= whole);
-    }
-    views
-}
-
-fn shares(share: &Share) -> ByKind {
-    let mut on = [share.usual; KINDS];
-    for (kind, slot) in TABLES.ranking.kinds.iter().zip(&mut on) {
-        if let Some(&share) = share.on.get(&kind.name) {
-            *slot = share;
-        }
-    }
-    on
-}
-
-fn class(word: &str) -> Option<Class> {
-    let mut characters = word.chars();
-    let duty = characters.next()?;
-    let digit = u8::try_from(characters.next()?.to_digit(10)?).ok()?;
-    Some(if duty == 'X' {
-        Class::X(digit)
-    } else {
-        Class::Y(digit)
-    })
-}
-
-fn climate() -> [Vec<Vec<u8>>; 3] {
-    [
-        ClimatePlace::Lowest,
-        ClimatePlace::Highest,
-        ClimatePlace::Days,
-    ]
-    .map(|place| {
-        let rows = TABLES.climate_figures().filter(|row| row.figure == place);
-        rows.flat_map(|row| row.values.iter().map(|value| value.clone().into_bytes()))
-            .collect()
-    })
-}
-
-fn rated_volts() -> Vec<f64> {
-    let mut volts: Vec<f64> = TABLES
-        .rated_voltages()
-        .flat_map(|row| row.volts.clone())
-        .collect();
-    volts.sort_by(f64::total_cmp);
-    volts
-}
-
-/// The coarsest series by mantissa.
-fn series() -> Vec<Option<Series>> {
-    let mut table = vec![None; 1000];
-    for row in TABLES.value_series() {
-        for &mantissa in &row.mantissas {
-            if let Some(slot @ None) = table.get_mut(usize::from(mantissa)) {
-                *slot = Some(row.series);
-            }
-        }
-    }
-    table
-}
-
-fn number(place: usize) -> u16 {
-    u16::try_from(place).expect("the tables have far fewer than 65536 rows")
+/// Returns the place of a family among the views; `None` is a part of which nothing is known.
+pub(super) fn view_of(family: Option<Family>) -> u8 {
+    let place = |family| Family::all().position(|other| other == family);
+    let place = family
+        .and_then(place)
+        .and_then(|place| u8::try_from(place + 1).ok());
+    place.unwrap_or(0)
 }
 
 /// Returns whether a family is a member of the group or the group itself of the other.
@@ -557,6 +269,10 @@ pub(super) fn agree(one: Family, other: Family) -> bool {
 
 /// Returns the family that says more.
 pub(super) fn more_precise(one: Family, other: Family) -> Family {
-    let member: Option<Dielectric> = other.member();
-    if member.is_some() { other } else { one }
+    if other.member().is_some() { other } else { one }
+}
+
+/// Returns a place as the number kept in pieces.
+pub(super) fn number(place: usize) -> u16 {
+    u16::try_from(place).expect("the tables have far fewer than 65536 rows")
 }

@@ -10,11 +10,13 @@
 //! ways that reach the end (`rank`). Every number in that decision is a row of `data/ranking.toml`. So a new notation is a
 //! rule, and no rule knows of another.
 //!
-//! Bounds: the first 96 characters are looked at, what stands behind them is listed as unexplained; 24 paths go on from
+//! Bounds: the first 96 characters are looked at, what stands behind them is listed as unexplained; 16 paths go on from
 //! each character; 50 readings are given.
 
 mod beam;
+mod compile;
 mod lexicon;
+mod path;
 mod piece;
 mod rank;
 mod reading;
@@ -31,6 +33,7 @@ mod rule_word;
 mod scan;
 #[cfg(test)]
 mod testing;
+mod weigh;
 mod words;
 
 pub use reading::{Decoding, RatedVoltage, Reading, Role, Used};

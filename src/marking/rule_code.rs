@@ -3,7 +3,8 @@
 //! ```text
 //! code = digit digit multiplier | digit digit digit multiplier        "224" = 22 · 10⁴ pF   "1002" = 100 · 10² pF
 //! ```
-//! The first digit is not 0. What a multiplier digit says is a row of `multipliers.toml`; 8 has two rows, by polarity.
+//! The first digit is not 0. What a multiplier digit says is a row of `multipliers.toml`; 8 has two rows, by polarity. Codes of four
+//! digits are read with the multipliers 0 to 7 only.
 
 use super::lexicon::Lexicon;
 use super::piece::{Amount, Pieces};
@@ -26,7 +27,7 @@ pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mu
             continue;
         }
         let evidence = match (figures.n_whole, multiplier.on) {
-            (4, Parts::Polar) => continue,
+            (4, _) if multiplier.exponent < 0 || multiplier.on != Parts::Any => continue,
             (4, _) => lexicon.named.code4,
             (_, Parts::Any) => lexicon.named.code3,
             (_, Parts::NonPolar) => lexicon.named.code3_small,
@@ -65,6 +66,7 @@ mod tests {
     fn four_digits_are_three_figures_and_a_power_of_ten() {
         check("1002", &["10 nF"]);
         check("4751", &["4.75 nF"]);
+        check("1208", &[]);
     }
 
     #[test]

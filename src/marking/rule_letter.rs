@@ -28,6 +28,9 @@ pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mu
     if behind == Sort::Letter {
         weight *= factors.tolerance_runs_on;
     }
+    if scan.at(at.wrapping_sub(1)).is_ascii_uppercase() {
+        weight *= factors.tolerance_runs_on;
+    }
     if matches!(before, Sort::Blank | Sort::Sign) {
         weight *= factors.tolerance_alone;
     }

@@ -16,6 +16,7 @@ pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mu
     let Some(figures) = scan.figures(at) else {
         return;
     };
+    let factors = &TABLES.ranking.factors;
     let word_at = scan.after_blanks(figures.end);
     for entry in lexicon.units.longest(scan, word_at) {
         let end = word_at + entry.glyphs.len();
@@ -25,14 +26,19 @@ pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mu
         if runs_on && !followed {
             continue;
         }
-        let apart = if is_letter && word_at > figures.end {
-            TABLES.ranking.factors.unit_letter_apart
-        } else {
-            1.0
-        };
+        let mut weight = entry.meaning.share;
+        if is_letter && word_at > figures.end {
+            weight *= factors.unit_letter_apart;
+        }
+        if is_letter && scan.sort(end) == Sort::Digit {
+            weight *= factors.unit_letter_runs_on;
+        }
+        if is_letter && figures.n_decimals > 0 && scan.at(word_at).is_ascii_uppercase() {
+            weight *= factors.unit_letter_decimal;
+        }
         let unit = &entry.meaning;
         let amount = Amount::of(figures, unit.exponent);
-        pieces.value((at, end), amount, unit.evidence, unit.share * apart);
+        pieces.value((at, end), amount, unit.evidence, weight);
     }
 }
 

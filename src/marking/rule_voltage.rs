@@ -29,7 +29,7 @@ pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mu
     pointed(scan, figures, &mut out);
     if scan.sort(figures.end) != Sort::Letter {
         let bare = Volts {
-            volts: 1.0,
+            scale: 1.0,
             kind: VoltageKind::Unstated,
             evidence: lexicon.named.voltage_bare,
             share: 1.0,
@@ -43,7 +43,7 @@ pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mu
         let volts = f64::from(mantissa * power_of_ten(power));
         if mantissa >= 10 && lexicon.is_rated(volts) {
             let group = Volts {
-                volts: 1.0,
+                scale: 1.0,
                 kind: VoltageKind::Unstated,
                 evidence: lexicon.named.voltage_group,
                 share: 1.0,
@@ -62,7 +62,7 @@ struct Proposals<'a> {
 impl Proposals<'_> {
     fn add(&mut self, number: f64, end: usize, unit: &Volts, form: Form) {
         let factors = &TABLES.ranking.factors;
-        let volts = (number * unit.volts * 1000.0).round() / 1000.0;
+        let volts = (number * unit.scale * 1000.0).round() / 1000.0;
         if volts <= 0.0 || volts > MOST_VOLTS {
             return;
         }
@@ -96,7 +96,7 @@ fn worded(scan: &Scan<'_>, figures: Figures, out: &mut Proposals<'_>) {
 
 fn pointed(scan: &Scan<'_>, whole: Figures, out: &mut Proposals<'_>) {
     let lexicon = out.lexicon;
-    if whole.n_decimals > 0 || whole.n_whole > 2 {
+    if whole.n_decimals > 0 || whole.n_whole > 2 || whole.digits == 0 {
         return;
     }
     let letter_at = whole.end;

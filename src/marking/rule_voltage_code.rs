@@ -1,7 +1,7 @@
 //! Rated voltages as a code: a digit and a letter, or on chip parts one letter beside three digits.
 //!
 //! ```text
-//! code   = digit letter          "2A" = 100 V, before the value or behind it; no letter follows
+//! code   = digit letter          "2A" = 100 V, before the value or behind it; no letter follows, nor one or two digits
 //! single = letter                "107A"  "A475"
 //! ```
 
@@ -15,8 +15,8 @@ pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mu
         single(scan, at, lexicon, pieces);
         return;
     }
-    let is_apart =
-        scan.sort(at + 2) != Sort::Letter && scan.sort(at.wrapping_sub(1)) != Sort::Digit;
+    let value_follows = scan.whole(at + 2).is_none_or(|value| value.n_whole >= 3);
+    let is_apart = scan.sort(at + 2) != Sort::Letter && value_follows;
     for entry in lexicon.voltage_codes.longest(scan, at).filter(|_| is_apart) {
         push((at, at + 2), &entry.meaning, pieces);
     }
@@ -39,7 +39,7 @@ fn single(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mut Pieces) {
 
 fn push(cells: (usize, usize), found: &Volts, pieces: &mut Pieces) {
     let voltage = Voltage {
-        volts: found.volts,
+        volts: found.scale,
         kind: found.kind,
         form: Form::Said,
     };
@@ -71,6 +71,8 @@ mod tests {
         check("3F", &["3.15 kV dc"]);
         check("2M", &[]);
         check("1KV", &[]);
+        check("2K2", &[]);
+        check("2C1", &[]);
     }
 
     #[test]

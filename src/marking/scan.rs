@@ -79,6 +79,11 @@ impl<'t> Scan<'t> {
         self.n_cells
     }
 
+    /// Returns how many cells are not blank.
+    pub(super) fn n_visible(&self) -> usize {
+        self.rest(0).iter().filter(|&&glyph| glyph != b' ').count()
+    }
+
     /// Returns the glyph of a cell; a blank past either end.
     pub(super) fn at(&self, cell: usize) -> u8 {
         self.glyphs.get(cell).copied().unwrap_or(b' ')

@@ -1,8 +1,9 @@
 //! Readings in full: what was used for what, what was not, and why.
 
-use super::beam::{Beam, NONE};
+use super::beam::Beam;
+use super::path::NONE;
 use super::piece::{Meaning, Piece};
-use super::rank::{Ranked, why};
+use super::weigh::Ranked;
 use super::{Decoding, Reading, Role, Used};
 use crate::tables::TABLES;
 
@@ -132,7 +133,11 @@ fn reasons(
 ) -> Vec<String> {
     let mut found: Vec<String> = Vec::with_capacity(pieces.len() + 2);
     for piece in pieces {
-        if let Some(why) = why(beam.lexicon, piece.evidence) {
+        let reason = beam.lexicon.reason(piece.evidence);
+        if let Some(why) = reason
+            .map(|reason| reason.why.as_str())
+            .filter(|why| !why.is_empty())
+        {
             let text = piece.text(beam.scan);
             found.push([text, ": ", why].concat());
         }

@@ -1,8 +1,8 @@
 //! What is usual for a family of parts.
 
 use super::codes::{quantity, tolerance};
+use super::names::family;
 use super::read::RawRow;
-use super::words::family;
 use super::{Family, TABLES};
 use crate::quantity::{Farad, Hertz, Quantity, Span, Tolerance, Volt};
 use serde::Deserialize;
@@ -53,13 +53,17 @@ pub fn family_facts(family: Family) -> FamilyFacts {
 /// Returns the facts of every family, groups put together from their members.
 pub(super) fn all_facts(rows: &[FamilyRow]) -> Vec<FamilyRow> {
     let facts = |family: Family| {
-        let of_members = rows
-            .iter()
-            .filter(|row| row.family.is_one_of(family))
-            .map(|row| row.facts);
-        of_members
-            .reduce(loosest)
-            .map(|facts| FamilyRow { family, facts })
+        let own = rows.iter().find(|row| row.family == family);
+        let members = rows.iter().filter(|row| row.family.is_one_of(family));
+        let of_members = || {
+            let facts = members.map(|row| row.facts).reduce(loosest)?;
+            Some(FamilyFacts {
+                usual_loss: None,
+                ..facts
+            })
+        };
+        let facts = own.map(|row| row.facts).or_else(of_members)?;
+        Some(FamilyRow { family, facts })
     };
     Family::all().filter_map(facts).collect()
 }
@@ -218,6 +222,15 @@ mod tests {
             "ceramic",
             "ceramic: unmarked ±20 %, loss at most 0.125 at 1 kHz, 0.1 pF to 100 µF, 4 V to 30 kV",
         );
+    }
+
+    #[test]
+    fn a_group_with_named_members_has_no_usual_loss() {
+        for family in Family::all() {
+            let has_members = family.member().is_none() && family.members().next().is_some();
+            let expected = family_facts(family).usual_loss.filter(|_| !has_members);
+            assert_eq!(family_facts(family).usual_loss, expected, "{family}");
+        }
     }
 
     #[test]

@@ -7,6 +7,7 @@ mod codes;
 pub mod document;
 mod facts;
 mod family;
+mod names;
 mod ranking;
 mod read;
 mod values;
@@ -18,16 +19,14 @@ pub use codes::{
 };
 pub use facts::{FamilyFacts, FamilyRow, LossLimit, family_facts};
 pub use family::{Dielectric, Family, Group};
+pub use names::{ClimateFigure, ClimatePlace, FamilyWord, SafetyWord};
 pub use ranking::{
     Evidence, Factors, KINDS, Kind, Ranking, SeriesRow, SeriesShares, ToleranceShares,
 };
 pub use read::{TableError, TableRow};
 pub use values::{RatedVoltages, Series, ValueSeries};
 pub use without_bias::{WithoutBias, peak_without_bias};
-pub use words::{
-    ClimateFigure, ClimatePlace, FamilyWord, Place, PointLetter, SafetyWord, UnitWord, VoltageKind,
-    VoltagePoint, VoltageWord,
-};
+pub use words::{Place, PointLetter, UnitWord, VoltageKind, VoltagePoint, VoltageWord};
 
 use read::{RawRow, Table, read_rows};
 use std::sync::LazyLock;
@@ -102,9 +101,9 @@ tables! {
     multipliers: codes::RawMultiplier => Multiplier, "multipliers.toml", "Returns the multiplier digits.";
     unit_words: words::RawUnitWord => UnitWord, "unit-words.toml", "Returns the words for a unit of capacitance.";
     point_letters: words::RawPointLetter => PointLetter, "point-letters.toml", "Returns the letters that stand for the decimal point.";
-    family_words: words::RawFamilyWord => FamilyWord, "family-words.toml", "Returns the words for families and characteristics.";
-    safety_words: words::RawSafetyWord => SafetyWord, "safety-classes.toml", "Returns the classes of interference suppression.";
-    climate_figures: words::RawClimateFigure => ClimateFigure, "climate.toml", "Returns the figures of climatic categories.";
+    family_words: names::RawFamilyWord => FamilyWord, "family-words.toml", "Returns the words for families and characteristics.";
+    safety_words: names::RawSafetyWord => SafetyWord, "safety-classes.toml", "Returns the classes of interference suppression.";
+    climate_figures: names::RawClimateFigure => ClimateFigure, "climate.toml", "Returns the figures of climatic categories.";
     without_bias: without_bias::RawWithoutBias => WithoutBias, "without-bias.toml", "Returns the voltages for polarised families.";
     families: facts::RawFamilyRow => FamilyRow, "families.toml", "Returns the members of families, and the groups without named ones.";
 }

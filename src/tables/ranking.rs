@@ -1,7 +1,7 @@
 //! What makes one reading of a marking more probable than another.
 
+use super::names::family;
 use super::read::{Sourced, TableError, TableRow, head, place, read_toml};
-use super::words::family;
 use super::{Family, Series};
 use serde::Deserialize;
 use std::collections::BTreeMap;
@@ -125,7 +125,10 @@ factors!(
     bare_voltage_first: "A bare voltage before the value.",
     tolerance_first: "A tolerance before the value.",
     tolerance_alone: "A tolerance letter with blanks around it.",
-    tolerance_runs_on: "A tolerance letter with another letter behind it.",
+    tolerance_runs_on: "A tolerance letter with another behind it, or a capital before it.",
+    unit_letter_decimal: "A capital for the unit behind figures with a point.",
+    four_figures: "A value of no series with more than three figures.",
+    unit_letter_runs_on: "A unit of one letter with a digit right behind it.",
     unit_letter_apart: "A blank between the figures and a unit of one letter.",
     word_alone: "A family word apart from the figures behind it.",
     temperature_without_degree: "A temperature without its degree sign.",
@@ -139,9 +142,11 @@ factors!(
     unexplained_figures: "Figures left unexplained.",
     unexplained_letters: "A letter left unexplained.",
     unexplained_more_letters: "Each further letter left unexplained.",
-    unexplained_touching: "Letters or figures left unexplained that touch others.",
+    unexplained_touching: "Anything left unexplained that touches letters or figures.",
     unexplained_sign: "A sign left unexplained.",
     no_value: "A marking that says nothing of the value.",
+    unknown_code: "A marking in a code that is not known here.",
+    unknown_code_character: "Each character of such a marking.",
     rival_share: "The share from which a rival a thousandfold away counts.",
     rival_cap: "The highest plausibility beside such a rival.",
     least_plausibility: "The least plausibility of a reading.",

@@ -3,8 +3,8 @@
 mod balance;
 mod example;
 mod judge;
-mod layers;
 mod logs;
+mod markings;
 mod planted;
 mod profiles;
 mod tables;
