@@ -19,8 +19,13 @@ const MARKINGS: [(&str, &str); 6] = [
 
 #[divan::bench(args = MARKINGS.map(|(marking, _)| marking))]
 fn marking(bencher: Bencher<'_, '_>, marking: &str) {
-    let expected = MARKINGS.iter().find(|row| row.0 == marking).map(|row| row.1);
-    let best = decode(marking, None).best().map(|best| best.capacitance.to_string());
+    let expected = MARKINGS
+        .iter()
+        .find(|row| row.0 == marking)
+        .map(|row| row.1);
+    let best = decode(marking, None)
+        .best()
+        .map(|best| best.capacitance.to_string());
     assert_eq!(best.as_deref(), expected, "decoding {marking}");
     bencher.bench(|| decode(black_box(marking), None));
 }

@@ -3,8 +3,11 @@
 mod balance;
 mod example;
 mod judge;
+mod layers;
 mod logs;
 mod markings;
 mod planted;
 mod profiles;
+mod screens;
+mod table;
 mod tables;

@@ -42,9 +42,9 @@ fn part_at(meter: &Meter, switch: Switch, place: f64, loss: f64) -> Option<Part>
             None => meter.dial.travel(found.balance) > place,
         };
         if is_above {
-            high = middle
+            high = middle;
         } else {
-            low = middle
+            low = middle;
         }
     }
     let part = planted(low, loss);

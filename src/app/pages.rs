@@ -1,0 +1,345 @@
+//! What the list screens say: one function a screen, from state to rows.
+
+use super::figures::deviation;
+use super::lists::{ListView, Row};
+use super::lot::{Share, in_tolerances};
+use super::work::known_part;
+use super::{Entry, RecordKind, State, Units};
+use crate::meter::{DialReading, Repeats, Seen, Switch, measure, predict};
+use crate::quantity::{Farad, Fraction};
+
+/// Rows of what was sorted, the latest first.
+pub(super) fn tray(state: &State, entries: &[Entry]) -> ListView {
+    let parts = entries
+        .iter()
+        .filter(|entry| entry.record.kind == RecordKind::Part && entry.voided.is_none());
+    let rows = parts.rev().map(|entry| sorted_row(state.look.units, entry));
+    ListView::new(
+        vec![
+            "entry",
+            "place",
+            "marking",
+            "value",
+            "deviation",
+            "finding",
+            "lot",
+        ],
+        rows.collect(),
+    )
+}
+
+fn sorted_row(units: Units, entry: &Entry) -> Row {
+    let (raw, outcome) = (&entry.record.raw, &entry.record.outcome);
+    let optional = |text: Option<String>| text.unwrap_or_else(|| "-".to_owned());
+    let cells = vec![
+        entry.id.to_string(),
+        optional(outcome.compartment.clone()),
+        raw.marking.clone(),
+        optional(units.measured(outcome)),
+        optional(deviation(outcome)),
+        outcome.finding.clone(),
+        entry.record.lot.clone(),
+    ];
+    let mut details = vec![format!(
+        "measured {} on switch {}, typed {}",
+        entry.time.format("%-d %b %Y %H:%M"),
+        raw.switch,
+        raw.typed
+    )];
+    if let Some(value) = units.measured_with_doubt(outcome) {
+        details.push(format!("{value} (k = 2)"));
+    }
+    details.extend(raw.family.clone());
+    details.extend(raw.looks.as_ref().map(|looks| format!("looks {looks}")));
+    details.extend(raw.note.clone());
+    details.extend((!outcome.remark.is_empty()).then(|| outcome.remark.clone()));
+    #[expect(
+        clippy::cast_precision_loss,
+        reason = "only for sorting; ids stay far below 2^52"
+    )]
+    let id = entry.id.0 as f64;
+    Row {
+        cells,
+        details,
+        finding: Some(outcome.finding.clone()),
+        keys: vec![
+            Some(-id),
+            None,
+            None,
+            outcome.capacitance_pf,
+            outcome.deviation_percent.map(f64::abs).map(|d| -d),
+            None,
+            None,
+        ],
+    }
+}
+
+/// Rows of what each switch of the meter can do, then the check parts over time.
+pub(super) fn meter(state: &State) -> ListView {
+    let meter = &state.setup.meter;
+    let mut rows: Vec<Row> = meter.switches().map(|s| switch_row(state, s)).collect();
+    let known = meter.checks.iter().map(|check| {
+        Row::of(vec![
+            "check part".to_owned(),
+            check.label.clone(),
+            state.look.units.write(check.capacitance),
+            format!("±{} (k = 2)", Fraction::new(2.0 * check.uncertainty.get())),
+        ])
+    });
+    rows.extend(known);
+    rows.extend(
+        state
+            .lot
+            .entries
+            .iter()
+            .rev()
+            .filter(|entry| entry.record.kind != RecordKind::Part)
+            .map(|entry| check_row(state.look.units, entry)),
+    );
+    ListView::new(
+        vec!["what", "which", "reach", "doubt at its best, k = 2"],
+        rows,
+    )
+}
+
+fn check_row(units: Units, entry: &Entry) -> Row {
+    let outcome = &entry.record.outcome;
+    Row {
+        cells: vec![
+            entry.time.format("%-d %b %H:%M").to_string(),
+            entry.record.raw.marking.clone(),
+            units.measured_with_doubt(outcome).unwrap_or_default(),
+            deviation(outcome).unwrap_or_default(),
+        ],
+        details: vec![outcome.remark.clone()],
+        finding: Some(outcome.finding.clone()),
+        keys: Vec::new(),
+    }
+}
+
+/// Looks at so many places of the dial of each switch.
+const N_PLACES: u32 = 21;
+
+fn switch_row(state: &State, switch: Switch) -> Row {
+    let meter = &state.setup.meter;
+    let units = state.look.units;
+    let dial = &meter.dial;
+    let places = (0..N_PLACES).map(|n| {
+        let travel = f64::from(n) / f64::from(N_PLACES - 1);
+        DialReading::new(dial.low.get() + travel * (dial.high.get() - dial.low.get()))
+    });
+    let mut reach: Option<(Farad, Farad)> = None;
+    let mut best: Option<(Fraction, String)> = None;
+    let mut lit: Vec<DialReading> = Vec::new();
+    for place in places {
+        let seen = Seen::Middle(Repeats::once(place));
+        let measured = measure(meter, switch, seen, &known_part(Farad::new(1e-9), 0.0));
+        let Some(estimate) = measured.estimate() else {
+            continue;
+        };
+        let value = estimate.capacitance;
+        reach = Some(reach.map_or((value, value), |(low, high)| {
+            (
+                if value < low { value } else { low },
+                if value > high { value } else { high },
+            )
+        }));
+        let doubt = estimate.combined().relative();
+        if best.as_ref().is_none_or(|(least, _)| doubt < *least) {
+            let source = measured.contributions.first();
+            let source = source.map_or_else(String::new, |c| c.source.to_string());
+            best = Some((doubt, source));
+        }
+        if predict(meter, switch, &known_part(value, 0.0))
+            .dark
+            .is_none()
+        {
+            lit.push(place);
+        }
+    }
+    let reach_text = reach.map_or_else(
+        || "nothing".to_owned(),
+        |(low, high)| format!("{} … {}", units.write(low), units.write(high)),
+    );
+    let doubt_text = best.map_or_else(String::new, |(least, source)| {
+        format!("±{}, mostly {source}", Fraction::new(2.0 * least.get()))
+    });
+    let mut details = vec![axis(reach)];
+    if let (Some(first), Some(last)) = (lit.first(), lit.last()) {
+        let (first, last) = (dial.show(*first), dial.show(*last));
+        details.push(if first == last {
+            format!("the lamp cannot go dark at {first}")
+        } else {
+            format!("the lamp cannot go dark from {first} to {last}")
+        });
+    }
+    Row {
+        details,
+        ..Row::of(vec![
+            "switch".to_owned(),
+            meter.label(switch).to_owned(),
+            reach_text,
+            doubt_text,
+        ])
+    }
+}
+
+/// Draws the reach of a switch on a logarithmic axis from 1 pF to 1 mF, six characters a decade.
+fn axis(reach: Option<(Farad, Farad)>) -> String {
+    const A_DECADE: f64 = 6.0;
+    let place = |c: Farad| (c.picofarads().max(1.0).log10() * A_DECADE).round();
+    let marks: String = (0..=54)
+        .map(|column| {
+            let column = f64::from(column);
+            match reach {
+                Some((low, high)) if place(low) <= column && column <= place(high) => '━',
+                _ if (column % (3.0 * A_DECADE)).abs() < 0.5 => '┼',
+                _ => '─',
+            }
+        })
+        .collect();
+    format!("1 pF {marks} 1 mF")
+}
+
+/// Rows of the code tables.
+pub(super) fn codes(state: &State) -> ListView {
+    let rows = state.codes.iter().map(|code| Row {
+        details: vec![format!("source: {}", code.source)],
+        ..Row::of(vec![code.table.clone(), code.text.clone()])
+    });
+    ListView::new(vec!["table", "what it says"], rows.collect())
+}
+
+/// Rows of the lot: what it yields, its histogram, then its parts.
+pub(super) fn lot(state: &State) -> ListView {
+    let lot = &state.lot;
+    let mut rows = Vec::new();
+    let mut say = |what: &str, text: String| rows.push(Row::of(vec![what.to_owned(), text]));
+    say(
+        "findings",
+        format!(
+            "{} inside, {} outside, {} undecided, {} dead",
+            lot.count("inside"),
+            lot.count("outside"),
+            lot.count("undecided"),
+            lot.count("dead")
+        ),
+    );
+    if let Some(share) = lot.share_inside() {
+        say(
+            "yield",
+            format!("{} of the parts with a word", interval(share)),
+        );
+    }
+    if let Some(share) = lot.share_with_common_error() {
+        say(
+            "and the meter",
+            format!(
+                "{} by value, the error all parts share in it",
+                interval(share)
+            ),
+        );
+    }
+    if let Some(seconds) = lot.seconds_a_part() {
+        say("pace", format!("{seconds:.0} s a part, pauses left out"));
+    }
+    for (what, count) in histogram(&lot.deviations()) {
+        say(&what, format!("{count:>4} {}", "█".repeat(count.min(50))));
+    }
+    for (number, entry) in (1..).zip(lot.parts()) {
+        let outcome = &entry.record.outcome;
+        let place = in_tolerances(outcome).map_or_else(String::new, dot);
+        let row = Row {
+            finding: Some(outcome.finding.clone()),
+            details: vec![outcome.remark.clone()],
+            ..Row::of(vec![
+                format!("part {number}"),
+                format!(
+                    "{place:<23} {}  {}",
+                    entry.record.raw.marking,
+                    state.look.units.measured(outcome).unwrap_or_default()
+                ),
+            ])
+        };
+        rows.push(row);
+    }
+    ListView::new(vec!["what", "-1 and +1: the limits"], rows)
+}
+
+/// Where a value lies between its limits: a dot on a line from -2 to +2 tolerances.
+fn dot(deviation: f64) -> String {
+    let place = (deviation.clamp(-2.0, 2.0) * 5.0 + 10.0).round();
+    (0..=20)
+        .map(|column| match f64::from(column) {
+            column if (column - place).abs() < 0.5 => '●',
+            column if (column - 10.0).abs() > 4.5 && (column - 10.0).abs() < 5.5 => '│',
+            _ => '·',
+        })
+        .collect()
+}
+
+/// Counts deviations in steps of half a tolerance from -2 to +2, with all beyond at either end.
+pub fn histogram(deviations: &[f64]) -> Vec<(String, usize)> {
+    const EDGES: [f64; 9] = [-2.0, -1.5, -1.0, -0.5, 0.0, 0.5, 1.0, 1.5, 2.0];
+    let mut counts = [0; EDGES.len() + 1];
+    for deviation in deviations {
+        let bin = EDGES.iter().filter(|edge| **edge <= *deviation).count();
+        if let Some(count) = counts.get_mut(bin) {
+            *count += 1;
+        }
+    }
+    let mut names = vec!["below -2".to_owned()];
+    names.extend(
+        EDGES
+            .iter()
+            .zip(EDGES.iter().skip(1))
+            .map(|(low, high)| format!("{low:+.1} … {high:+.1}")),
+    );
+    names.push("above +2".to_owned());
+    names.into_iter().zip(counts).collect()
+}
+
+fn interval(share: Share) -> String {
+    format!(
+        "{:.0} % inside ({:.0} to {:.0} %, 95 %)",
+        share.share * 100.0,
+        share.low * 100.0,
+        share.high * 100.0
+    )
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn deviations_fall_into_half_tolerances() {
+        let shown: Vec<String> = histogram(&[-3.0, -0.2, 0.0, 0.4, 2.0])
+            .into_iter()
+            .filter(|(_, count)| *count > 0)
+            .map(|(name, count)| format!("{name}: {count}"))
+            .collect();
+        assert_eq!(
+            shown,
+            [
+                "below -2: 1",
+                "-0.5 … +0.0: 1",
+                "+0.0 … +0.5: 2",
+                "above +2: 1"
+            ]
+        );
+    }
+
+    #[test]
+    fn a_switch_is_drawn_where_it_reaches() {
+        let line = axis(Some((Farad::new(1e-9), Farad::new(1e-8))));
+        let bar: Vec<usize> = line
+            .chars()
+            .skip(5)
+            .enumerate()
+            .filter(|(_, c)| *c == '━')
+            .map(|(index, _)| index)
+            .collect();
+        assert_eq!((bar.first(), bar.last()), (Some(&18), Some(&24)));
+    }
+}
