@@ -3,7 +3,7 @@
 //! One assembly line, each station a module that knows only those above it:
 //! text and units ([`quantity`]), facts ([`tables`]), what is printed on a part ([`marking`]), where it nulls and what a
 //! reading means ([`meter`]), whether it is inside its limits ([`finding`]), where it goes ([`tray`]), what the person sees
-//! and does ([`app`], [`screen`]). The edges are [`log`] (disk), `terminal` (keys and screen) and `cli` (commands).
+//! and does ([`app`], [`screen`]). The edges are [`log`] (disk), [`terminal`] (keys and screen) and [`cli`] (commands).
 
 #![cfg_attr(not(test), warn(clippy::unwrap_used))]
 
@@ -25,4 +25,6 @@ pub mod screen;
 
 pub mod log;
 
+pub mod terminal;
 
+pub mod cli;

@@ -1,6 +1,7 @@
 //! The integration tests, one binary: a module a subject.
 
 mod balance;
+mod cli;
 mod example;
 mod judge;
 mod layers;
@@ -8,6 +9,7 @@ mod logs;
 mod markings;
 mod planted;
 mod profiles;
+mod pty;
 mod screens;
 mod table;
 mod tables;
