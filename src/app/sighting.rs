@@ -23,7 +23,7 @@ pub struct Sighting {
 /// Reads what was seen.
 ///
 /// # Errors
-/// As [`read`], for the forms of the dial prompt only.
+/// As [`super::read_entry`], for the forms of the dial prompt only.
 pub fn read_sighting(
     text: &str,
     dial: &Dial,

@@ -4,7 +4,7 @@ use std::io::{BufReader, Write};
 use std::path::{Path, PathBuf};
 use std::{env, fs, process};
 
-use chrono::Local;
+use chrono::{Local, SubsecRound};
 
 use super::Streams;
 use super::args::{self, BenchOptions, Places};
@@ -139,7 +139,7 @@ fn open_log(path: &Path, stderr: &mut dyn Write) -> Result<Log, Failure> {
 /// A log with the built-in lot in it, measured and judged like any other.
 fn demonstration(path: &Path, setup: &Setup, lot: &str) -> Result<Log, Failure> {
     let (mut log, _) = Log::open(path).map_err(of_log)?;
-    let now = Local::now().fixed_offset();
+    let now = Local::now().fixed_offset().trunc_subsecs(3);
     log.append_all(demo_records(setup, lot), now, &setup.profile_text)
         .map_err(of_log)?;
     Ok(log)

@@ -154,8 +154,10 @@ fn expected(state: &State) -> String {
         Subject::Part(marked) => {
             words.extend(marked.reading().map(Reading::in_words));
             let others = marked.decoding.readings.len().saturating_sub(1);
-            if others > 0 {
-                words.push(format!("{others} other readings: +2 takes the second"));
+            match others {
+                0 => {}
+                1 => words.push("one other reading: +2 takes it".to_owned()),
+                _ => words.push(format!("{others} other readings: +2 takes the second")),
             }
         }
         Subject::Check(check) => words.push(format!(

@@ -4,7 +4,7 @@ use std::borrow::Cow;
 use std::io::{BufWriter, Write};
 use std::path::Path;
 
-use chrono::{DateTime, FixedOffset, Local, SecondsFormat};
+use chrono::{DateTime, FixedOffset, Local, SecondsFormat, SubsecRound};
 
 use super::Streams;
 use super::args::{ExportFormat, LogArgs, LogCommand, Places};
@@ -70,7 +70,7 @@ fn existing(path: &Path) -> Result<Log, Failure> {
 }
 
 fn now() -> DateTime<FixedOffset> {
-    Local::now().fixed_offset()
+    Local::now().fixed_offset().trunc_subsecs(3)
 }
 
 fn tell(

@@ -112,6 +112,52 @@ impl Ranked {
     }
 }
 
+/// A word with what goes with it.
+struct Said {
+    word: Word,
+    why: Option<String>,
+    slip: Option<Slip>,
+    doubt: Doubt,
+}
+
+/// What keeps a word from being said.
+#[derive(Clone, Copy, PartialEq, Eq)]
+enum Doubt {
+    /// Nothing does.
+    None,
+    /// The value is not known well enough: a better measurement would help.
+    InTheValue,
+    /// Something that no better measurement of this kind would settle.
+    Elsewhere,
+}
+
+impl Said {
+    /// The word that the value itself gives.
+    fn plainly(word: Word) -> Self {
+        let doubt = if word == Word::Undecided {
+            Doubt::InTheValue
+        } else {
+            Doubt::None
+        };
+        Self {
+            word,
+            why: None,
+            slip: None,
+            doubt,
+        }
+    }
+
+    /// No word, and why.
+    fn withheld(why: String) -> Self {
+        Self {
+            word: Word::Undecided,
+            why: Some(why),
+            slip: None,
+            doubt: Doubt::Elsewhere,
+        }
+    }
+}
+
 impl Weighed {
     fn probability(&self) -> f64 {
         if self.evidence.total > 0.0 {
@@ -185,25 +231,9 @@ impl Case<'_> {
             .filter(|_| loss != LossVerdict::TooLossy);
         let is_weighed = estimate.is_some() || matches!(measured.value, Value::Window { .. });
         let probability = is_weighed.then(|| weighed.probability());
-        let mut remarks = Vec::new();
-        let mut found_slip = None;
-        let word = if let Some(why) = self.death(&part, loss) {
-            remarks.push(why);
-            Word::Dead
-        } else if let Some(probability) = self.deciding_probability(weighed).filter(|_| is_weighed)
-        {
-            let word = word_of(probability, self.rules);
-            let (word, why, slip) = self.withheld(word, &ranked, index, &part);
-            remarks.extend(why);
-            found_slip = slip;
-            word
-        } else {
-            remarks.push(remark::no_value(
-                self.observation,
-                loss == LossVerdict::TooLossy,
-            ));
-            Word::Undecided
-        };
+        let said = self.say(&ranked, index, &part, loss);
+        let word = said.word;
+        let mut remarks: Vec<String> = said.why.into_iter().collect();
         remarks.extend(remark::about_limits(
             reading,
             &weighed.limits,
@@ -216,11 +246,13 @@ impl Case<'_> {
         if probability == Some(0.0) {
             remarks.push("far from every reading of this marking".to_owned());
         }
-        if word == Word::Undecided && found_slip.is_none() {
+        if said.doubt == Doubt::InTheValue {
             remarks.extend(self.next_step(estimate, &part, weighed));
         }
         remarks.extend(remark::about_loss(measured, loss));
-        remarks.extend(remark::largest_doubt(measured, word));
+        if said.doubt == Doubt::InTheValue {
+            remarks.extend(remark::largest_doubt(measured));
+        }
         remarks.extend(remark::about_circumstances(self.circumstances, reading));
         Verdict {
             word,
@@ -231,7 +263,7 @@ impl Case<'_> {
             probability_flat: weighed.probability_flat.filter(|_| is_weighed),
             reading_probability: Some(ranked.posterior(index)),
             ranking: ranked.ranking,
-            slip: found_slip,
+            slip: said.slip,
             value: match word {
                 Word::Inside => Tested::Ok,
                 Word::Outside | Word::Dead => Tested::Bad,
@@ -244,6 +276,35 @@ impl Case<'_> {
             leakage: Tested::NotTested,
             looks: remark::looks(self.circumstances),
             remarks,
+        }
+    }
+
+    /// The word, and why where it is not the measured value alone that says it.
+    fn say(&self, ranked: &Ranked, index: usize, part: &Part, loss: LossVerdict) -> Said {
+        if let Some(why) = self.death(part, loss) {
+            return Said {
+                why: Some(why),
+                ..Said::plainly(Word::Dead)
+            };
+        }
+        let is_value = matches!(
+            self.observation.measured.value,
+            Value::Estimate(_) | Value::Window { .. }
+        );
+        let weighed = &ranked.weighed[index];
+        match self
+            .deciding_probability(weighed)
+            .filter(|_| is_value && loss != LossVerdict::TooLossy)
+        {
+            Some(probability) => {
+                let word = word_of(probability, self.rules);
+                self.withheld(word, ranked, index, part)
+                    .unwrap_or_else(|| Said::plainly(word))
+            }
+            None => Said::withheld(remark::no_value(
+                self.observation,
+                loss == LossVerdict::TooLossy,
+            )),
         }
     }
 
@@ -284,38 +345,33 @@ impl Case<'_> {
     }
 
     /// What withholds a word: another reading of the marking, a slip, recent heat.
-    fn withheld(
-        &self,
-        word: Word,
-        ranked: &Ranked,
-        index: usize,
-        part: &Part,
-    ) -> (Word, Option<String>, Option<Slip>) {
+    fn withheld(&self, word: Word, ranked: &Ranked, index: usize, part: &Part) -> Option<Said> {
         if word == Word::Undecided {
-            return (word, None, None);
+            return None;
         }
         if let Some(why) = self.another_reading(word, ranked, index) {
-            return (Word::Undecided, Some(why), None);
+            return Some(Said::withheld(why));
         }
         if word != Word::Outside {
-            return (word, None, None);
+            return None;
         }
         if let Some(hours) = self.hours_to_wait(part.family) {
-            let why = format!(
+            return Some(Said::withheld(format!(
                 "hold it {hours:.0} h more: a class 2 or 3 ceramic reads high after heat; then measure again"
-            );
-            return (Word::Undecided, Some(why), None);
+            )));
         }
-        if self.circumstances.reading == ReadingCertainty::Once
-            && let Some(slip) = slip::find(
-                self.observation,
-                part,
-                Interval::of(&ranked.weighed[index].limits),
-            )
-        {
-            return (Word::Undecided, Some(slip.to_string()), Some(slip));
+        if self.circumstances.reading == ReadingCertainty::Confirmed {
+            return None;
         }
-        (word, None, None)
+        let slip = slip::find(
+            self.observation,
+            part,
+            Interval::of(&ranked.weighed[index].limits),
+        )?;
+        Some(Said {
+            slip: Some(slip.clone()),
+            ..Said::withheld(slip.to_string())
+        })
     }
 
     /// Another reading, probable enough, that would lead to another word; "none of these" only when it is the most

@@ -109,13 +109,9 @@ pub(super) fn dead_by_loss(measured: &Measured, limit: f64) -> String {
     format!("loss at least {at_least:.3}, more than 3 times the family's limit of {limit}")
 }
 
-/// The largest contributor to the doubt, where there is a doubt to be lessened.
-pub(super) fn largest_doubt(measured: &Measured, word: Word) -> Option<String> {
-    let first = measured.contributions.first()?;
-    if word != Word::Undecided {
-        return None;
-    }
-    let source = first.source;
+/// The largest contributor to the doubt, and what would lessen it.
+pub(super) fn largest_doubt(measured: &Measured) -> Option<String> {
+    let source = measured.contributions.first()?.source;
     let hint = match source {
         Source::Reading => "",
         Source::Calibration => " (better reference parts)",

@@ -2,7 +2,7 @@
 
 use std::collections::VecDeque;
 
-use chrono::{DateTime, FixedOffset, Local};
+use chrono::{DateTime, FixedOffset, Local, SubsecRound};
 
 use crate::app::{self, Effect, Entry, Event, LogFailure, Record, RecordId, Standing, State};
 use crate::log::{Log, Which};
@@ -61,7 +61,7 @@ impl Keeper {
 
     /// Does what is asked for; returns the answer, `None` if all there is to do is to ring.
     fn perform(&mut self, effect: Effect) -> Option<Event> {
-        let now = Local::now().fixed_offset();
+        let now = Local::now().fixed_offset().trunc_subsecs(3);
         Some(match effect {
             Effect::Append(record) => Event::Logged(self.append(*record, now).map(Box::new)),
             Effect::TakeBack => Event::TakenBack(

@@ -138,9 +138,15 @@ pub fn run(options: Options) -> Result<(), Failure> {
     ended.map_err(|error| Failure::of_terminal("draw the bench", &error))
 }
 
-/// Gives the terminal back. What fails here fails because the terminal is gone: nobody is left to be told.
+/// Gives the terminal back, its alternate screen empty: some terminals mix what is left there with the ordinary screen when
+/// the size has changed meanwhile. What fails here fails because the terminal is gone: nobody is left to be told.
 fn leave() {
-    let _ = execute!(io::stdout(), DisableBracketedPaste, cursor::Show);
+    let _ = execute!(
+        io::stdout(),
+        screen_mode::Clear(screen_mode::ClearType::All),
+        DisableBracketedPaste,
+        cursor::Show
+    );
     let _ = ratatui::try_restore();
 }
 

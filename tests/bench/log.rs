@@ -7,8 +7,14 @@ use std::sync::OnceLock;
 
 use chrono::{DateTime, FixedOffset};
 use divan::{Bencher, black_box};
-use nulltray::app::{Outcome, Raw, Record, RecordKind};
+use nulltray::app::{Look, MeterFrom, Outcome, Raw, Record, RecordKind, Setup, Size};
 use nulltray::log::{Log, Which, salvage};
+use nulltray::meter::Meter;
+use nulltray::screen;
+use nulltray::terminal::{Bell, Options};
+use nulltray::tray::Tray;
+use ratatui::buffer::Buffer;
+use ratatui::layout::Rect;
 
 const PROFILE: &str = include_str!("../../Cargo.toml");
 const SIZES: [usize; 3] = [1_000, 10_000, 100_000];
@@ -140,6 +146,45 @@ fn start(bencher: Bencher, n: usize) {
         (last.len(), in_compartments, in_lot)
     };
     assert_eq!(run(), (20, n as u64, LOT_SIZE as u64));
+    bencher.bench_local(|| black_box(run()));
+}
+
+/// All that happens between the start and the first frame: profile and tray read, log opened, lot and counts read, the
+/// frame drawn at 120 by 40. (The tables of `data/` are parsed once a process, before the timing starts.)
+#[divan::bench(args = SIZES, sample_count = 50)]
+fn start_to_first_frame(bencher: Bencher, n: usize) {
+    let path = filled(n);
+    let lot = record(n - 1).lot;
+    let run = || {
+        let profile_text = include_str!("../../data/example-meter.toml");
+        let (meter, _) = Meter::read(profile_text).expect("the example profile");
+        let (tray, _) =
+            Tray::read(include_str!("../../data/example-tray.toml")).expect("the example tray");
+        let setup = Setup {
+            meter,
+            profile_text: profile_text.to_owned(),
+            tray: Some(tray),
+        };
+        let (log, _) = Log::open(path).expect("a log");
+        let options = Options {
+            setup,
+            meter_from: MeterFrom::Example,
+            log,
+            lot: lot.clone(),
+            look: Look::default(),
+            bell: Bell::Silent,
+        };
+        let (state, _) = options
+            .begin(Size {
+                width: 120,
+                height: 40,
+            })
+            .expect("readable");
+        let mut buffer = Buffer::empty(Rect::new(0, 0, 120, 40));
+        screen::draw(&state, buffer.area, &mut buffer);
+        (state.lot.entries.len(), buffer.content.len())
+    };
+    assert_eq!(run(), (LOT_SIZE, 120 * 40));
     bencher.bench_local(|| black_box(run()));
 }
 

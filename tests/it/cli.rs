@@ -145,7 +145,7 @@ fn decode_for_people() {
         "",
         expect![[r#"
             224J 2A
-              220000 pF = 220 nF = 0.22 µF, plausibility 99.8 %
+              220000 pF = 220 nF = 0.22 µF, plausibility 99.9 %
                 limits         209 nF to 231 nF, ±5 %
                 voltage        100 V dc
                 used           `224` value, `J` tolerance, `2A` voltage
@@ -158,12 +158,12 @@ fn decode_for_people() {
         "",
         expect![[r#"
             224J | 100V
-              220000 pF = 220 nF = 0.22 µF, plausibility 98.3 %
+              220000 pF = 220 nF = 0.22 µF, plausibility 99.5 %
                 limits         209 nF to 231 nF, ±5 %
                 voltage        100 V dc
                 used           `224` value, `J` tolerance, `100V` voltage
                 why            224: two figures and a power of ten, in pF (EIA-198); J: tolerance letter for ±5 %; 100V: the voltage is printed with its unit
-              or 220 nF, no tolerance marked, 6.3 V dc, plausibility 1.6 %
+              or 220 nF, no tolerance marked, 6.3 V dc, plausibility 0.3 %
                 why            224: two figures and a power of ten, in pF (EIA-198); J: voltage letter of chip parts for 6.3 V; 100V: the voltage is printed with its unit; 100V: a second rated voltage, which contradicts what was taken
 
             X7R
@@ -180,7 +180,7 @@ fn decode_for_scripts() {
         &["decode", "--json", "224J 2A"],
         "",
         expect![[r#"
-            {"marking":"224J 2A","readings":[{"capacitance_pF":220000.0,"low_pF":209000.0,"high_pF":231000.0,"tolerance":"±5 %","rated_voltage_V":100.0,"voltage_kind":"dc","rated_voltage_ac_V":null,"family":null,"dielectric":null,"temperature_characteristic":null,"safety_class":null,"date":null,"sections_pF":null,"plausibility":0.998340469962,"used":[{"text":"224","as":"value"},{"text":"J","as":"tolerance"},{"text":"2A","as":"voltage"}],"unexplained":[],"why":["224: two figures and a power of ten, in pF (EIA-198)","J: tolerance letter for ±5 %","2A: a digit and a letter: rated voltage (JIS C 5101-1)"]}],"unexplained":[],"omitted":0}
+            {"marking":"224J 2A","readings":[{"capacitance_pF":220000.0,"low_pF":209000.0,"high_pF":231000.0,"tolerance":"±5 %","rated_voltage_V":100.0,"voltage_kind":"dc","rated_voltage_ac_V":null,"family":null,"dielectric":null,"temperature_characteristic":null,"safety_class":null,"date":null,"sections_pF":null,"plausibility":0.9993661504,"used":[{"text":"224","as":"value"},{"text":"J","as":"tolerance"},{"text":"2A","as":"voltage"}],"unexplained":[],"why":["224: two figures and a power of ten, in pF (EIA-198)","J: tolerance letter for ±5 %","2A: a digit and a letter: rated voltage (JIS C 5101-1)"]}],"unexplained":[],"omitted":0}
             exit 0
         "#]],
     );
@@ -352,7 +352,7 @@ fn judge_writes_what_it_read_and_what_it_found() {
             8,mid,473K,,,,never,pet,,never dark,47000,42300,51700,marked,,,,,,,,0.999494267006,undecided,,"never dark: find the dimmest place, then try the next switch"
             8,mid,473K,6.3,,,never,pet,,dimmest there,47000,42300,51700,marked,47484.7263237,1034.15502942,,,1.03133260372,0.999996497381,0.999976829734,0.999996860692,inside,,"loss at least 0.029, above its limit"
             8,mid,473K,,,,always,pet,,always dark,47000,42300,51700,marked,,,,,,,,0.999494267006,undecided,,"lamp, oscillator or wiring: check that the lamp lights with open terminals"
-            8,low,473K,6.3,,,,pet,,the wrong switch,47000,42300,51700,marked,771014.926868,8136.52127314,,,1540.45729121,0,0,0,undecided,,switch mid?; far from every reading of this marking; doubt: mostly the dial reading
+            8,low,473K,6.3,,,,pet,,the wrong switch,47000,42300,51700,marked,771014.926868,8136.52127314,,,1540.45729121,0,0,0,undecided,,switch mid?; far from every reading of this marking
             9,mid,'-20+80%,"4,2",,,,,,'=1+1,,,,,30573.8976139,388.896419754,,,,,,,undecided,,nothing in the marking is a value: measured only
             exit 0
         "#]],
@@ -381,7 +381,7 @@ fn judge_writes_what_it_read_and_what_it_found() {
             {"shelf":"8","switch":"mid","marking":"473K","dial":null,"dark_from":null,"dark_to":null,"lamp":"never","family":"pet","temperature":null,"note":"never dark","nominal_pF":47000,"low_pF":44650,"high_pF":49350,"limits_from":"house","capacitance_pF":null,"uncertainty_pF":null,"loss":null,"loss_below":null,"deviation_percent":null,"probability_inside":null,"probability_flat":null,"reading_probability":0.999494267006,"finding":"undecided","compartment":"no place","remark":"never dark: find the dimmest place, then try the next switch; limits by house rule, marked tolerance ±10 %; nearest is A1 film, inside, but for its finding"},
             {"shelf":"8","switch":"mid","marking":"473K","dial":6.3,"dark_from":null,"dark_to":null,"lamp":"never","family":"pet","temperature":null,"note":"dimmest there","nominal_pF":47000,"low_pF":44650,"high_pF":49350,"limits_from":"house","capacitance_pF":47484.7263237,"uncertainty_pF":1034.15502942,"loss":null,"loss_below":null,"deviation_percent":1.03133260372,"probability_inside":0.977698085971,"probability_flat":0.961296759756,"reading_probability":0.999996860692,"finding":"inside","compartment":"A1","remark":"limits by house rule, marked tolerance ±10 %; loss at least 0.029, above its limit"},
             {"shelf":"8","switch":"mid","marking":"473K","dial":null,"dark_from":null,"dark_to":null,"lamp":"always","family":"pet","temperature":null,"note":"always dark","nominal_pF":47000,"low_pF":44650,"high_pF":49350,"limits_from":"house","capacitance_pF":null,"uncertainty_pF":null,"loss":null,"loss_below":null,"deviation_percent":null,"probability_inside":null,"probability_flat":null,"reading_probability":0.999494267006,"finding":"undecided","compartment":"no place","remark":"lamp, oscillator or wiring: check that the lamp lights with open terminals; limits by house rule, marked tolerance ±10 %; nearest is A1 film, inside, but for its finding"},
-            {"shelf":"8","switch":"low","marking":"473K","dial":6.3,"dark_from":null,"dark_to":null,"lamp":null,"family":"pet","temperature":null,"note":"the wrong switch","nominal_pF":47000,"low_pF":44650,"high_pF":49350,"limits_from":"house","capacitance_pF":771014.926868,"uncertainty_pF":8136.52127314,"loss":null,"loss_below":null,"deviation_percent":1540.45729121,"probability_inside":0,"probability_flat":0,"reading_probability":0,"finding":"undecided","compartment":"no place","remark":"switch mid?; limits by house rule, marked tolerance ±10 %; far from every reading of this marking; doubt: mostly the dial reading; nearest is A1 film, inside, but for its finding"},
+            {"shelf":"8","switch":"low","marking":"473K","dial":6.3,"dark_from":null,"dark_to":null,"lamp":null,"family":"pet","temperature":null,"note":"the wrong switch","nominal_pF":47000,"low_pF":44650,"high_pF":49350,"limits_from":"house","capacitance_pF":771014.926868,"uncertainty_pF":8136.52127314,"loss":null,"loss_below":null,"deviation_percent":1540.45729121,"probability_inside":0,"probability_flat":0,"reading_probability":0,"finding":"undecided","compartment":"no place","remark":"switch mid?; limits by house rule, marked tolerance ±10 %; far from every reading of this marking; nearest is A1 film, inside, but for its finding"},
             {"shelf":"9","switch":"mid","marking":"-20+80%","dial":4.2,"dark_from":null,"dark_to":null,"lamp":null,"family":null,"temperature":null,"note":"=1+1","nominal_pF":null,"low_pF":null,"high_pF":null,"limits_from":null,"capacitance_pF":30573.8976139,"uncertainty_pF":388.896419754,"loss":null,"loss_below":null,"deviation_percent":null,"probability_inside":null,"probability_flat":null,"reading_probability":null,"finding":"undecided","compartment":"no place","remark":"nothing in the marking is a value: measured only; nearest is A2 inside, but for its finding"}
             ]
             exit 0

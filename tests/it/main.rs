@@ -4,6 +4,7 @@ mod balance;
 mod cli;
 mod example;
 mod judge;
+mod killed;
 mod layers;
 mod logs;
 mod markings;

@@ -135,7 +135,10 @@ impl Session {
     #[track_caller]
     fn ends_restored(mut self) {
         self.until("the ordinary screen and the cursor", |screen| {
-            !screen.alternate_screen() && !screen.hide_cursor() && !screen.bracketed_paste()
+            !screen.alternate_screen()
+                && !screen.hide_cursor()
+                && !screen.bracketed_paste()
+                && !screen.contents().contains("marking")
         });
         let status = self.child.wait().expect("the program ends");
         assert_eq!(status.exit_code(), 0);
@@ -145,6 +148,23 @@ impl Session {
                 local.contains("ICANON") && local.contains("ECHO"),
                 "{local}"
             );
+        }
+    }
+
+    /// Waits until the program is stopped: one that is told to go on before would then stop for good.
+    #[track_caller]
+    fn stands_still(&self) {
+        let id = self.child.process_id().expect("it runs");
+        let start = Instant::now();
+        loop {
+            let status = std::fs::read_to_string(format!("/proc/{id}/stat"));
+            let status = status.expect("the state of the program");
+            let after_name = status.rsplit(')').next().unwrap_or_default();
+            if after_name.trim_start().starts_with('T') {
+                return;
+            }
+            assert!(start.elapsed() < PATIENCE, "it does not stop: {status}");
+            thread::yield_now();
         }
     }
 
@@ -285,6 +305,7 @@ fn while_it_is_stopped_the_terminal_is_as_it_was() {
     session.until("the ordinary screen and the cursor", |screen| {
         !screen.alternate_screen() && !screen.hide_cursor()
     });
+    session.stands_still();
     session.signal("-CONT");
     session.until("the bench again", |screen| {
         screen.alternate_screen() && screen.contents().contains("220 nF ±5 %")
