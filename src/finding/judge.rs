@@ -249,7 +249,9 @@ impl Case<'_> {
         if said.doubt == Doubt::InTheValue {
             remarks.extend(self.next_step(estimate, &part, weighed));
         }
-        remarks.extend(remark::about_loss(measured, loss));
+        if word != Word::Dead || measured.loss.proven.is_some() {
+            remarks.extend(remark::about_loss(measured, loss));
+        }
         if said.doubt == Doubt::InTheValue {
             remarks.extend(remark::largest_doubt(measured));
         }
@@ -315,7 +317,7 @@ impl Case<'_> {
         }
     }
 
-    /// Why the part is dead: open, or far too lossy.
+    /// Why the part is dead: open, or far too lossy. What is open has no loss, so that comes first.
     fn death(&self, part: &Part, loss: LossVerdict) -> Option<String> {
         let Observation {
             meter,
@@ -323,25 +325,25 @@ impl Case<'_> {
             seen,
             measured,
         } = *self.observation;
-        if let LossVerdict::Dead { limit } = loss {
-            return Some(remark::dead_by_loss(measured, limit));
-        }
         if measured.value == Value::Open {
             return Some("open: less than the open terminals show".to_owned());
         }
-        let Seen::NeverDark {
-            dimmest: Some(place),
-        } = seen
-        else {
-            return None;
+        let is_dim_at_least_resistance = match seen {
+            Seen::NeverDark { dimmest } => dimmest == Some(low_resistance_stop(self.observation)),
+            _ => false,
         };
         let low = Part {
             capacitance: part.low?,
             ..*part
         };
-        let would_null = predict(meter, switch, &low).beyond.is_none();
-        (place == low_resistance_stop(self.observation) && would_null)
-            .then(|| "open: dimmest at the stop of least resistance, where no part inside its limits would null".to_owned())
+        if is_dim_at_least_resistance && predict(meter, switch, &low).beyond.is_none() {
+            let why = "open: dimmest at the stop of least resistance, where no part inside its limits would null";
+            return Some(why.to_owned());
+        }
+        match loss {
+            LossVerdict::Dead { limit } => Some(remark::dead_by_loss(measured, limit)),
+            _ => None,
+        }
     }
 
     /// What withholds a word: another reading of the marking, a slip, recent heat.

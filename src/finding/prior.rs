@@ -13,7 +13,7 @@
 
 use std::sync::LazyLock;
 
-use super::normal::{between, density};
+use super::normal::{between, cumulative, density};
 use super::{HouseRules, Limits};
 use crate::quantity::{Farad, Tolerance};
 
@@ -57,6 +57,9 @@ pub(super) struct Interval {
 }
 
 const N_TAIL_STEPS: usize = 12;
+/// The smallest capacitance of a part whose marking is not read, and how many quarter decades go up from there.
+const SMALLEST: f64 = 0.1e-12;
+const N_UNMARKED_STEPS: usize = 52;
 
 /// A step farther from the measured value than so many standard uncertainties holds less than 1e-30 of it.
 const REACH: f64 = 12.0;
@@ -87,66 +90,142 @@ impl Prior {
             mean: m,
             deviation: 0.5 * t,
         };
+        let (from, to) = self.wide();
         let wide = Piece::Flat {
             weight: 0.5 * drifted,
-            low: (m - 3.0 * t).max(0.01 * m),
-            high: m + 3.0 * t,
+            low: from,
+            high: to,
         };
         let tail = steps(0.01 * m, 0.5 * drifted, N_TAIL_STEPS);
         [made, wide].into_iter().chain(tail)
     }
 
+    /// The ends of the flat piece: three half widths to either side, but well above nothing.
+    fn wide(self) -> (f64, f64) {
+        (
+            (self.m - 3.0 * self.t).max(0.01 * self.m),
+            self.m + 3.0 * self.t,
+        )
+    }
+
     /// Weighs a measured value.
     pub(super) fn evidence(self, c: f64, u: f64, limits: Interval) -> Evidence {
-        let mut sum = Evidence::default();
-        for piece in self.pieces() {
-            let found = piece.evidence(c, u, limits);
-            sum.total += found.total;
-            sum.inside += found.inside;
-        }
+        let view = View::of(c, u, limits);
+        let Self { m, t, drifted } = self;
+        let mut sum = view.of_normal(1.0 - drifted, m, 0.5 * t);
+        let (from, to) = self.wide();
+        view.add_flat(
+            0.5 * drifted / (to - from),
+            (view.edge(from), view.edge(to)),
+            &mut sum,
+        );
+        view.add_steps(0.01 * m, 0.5 * drifted, N_TAIL_STEPS, &mut sum);
         sum
     }
 }
 
-impl Piece {
-    fn evidence(self, c: f64, u: f64, limits: Interval) -> Evidence {
-        match self {
-            Self::Normal {
-                weight,
-                mean,
-                deviation,
-            } => {
-                let spread = deviation.hypot(u);
-                let total = weight * density(c, mean, spread);
-                if total == 0.0 {
-                    return Evidence::default();
-                }
-                let posterior_mean = (deviation * deviation * c + u * u * mean) / (spread * spread);
-                let posterior_deviation = deviation * u / spread;
-                let low = (limits.low - posterior_mean) / posterior_deviation;
-                let high = (limits.high - posterior_mean) / posterior_deviation;
-                Evidence {
-                    total,
-                    inside: total * between(low, high),
-                }
+/// A measured value among limits, with what of it lies beyond each edge: an edge costs one Φ, however often it is used.
+struct View {
+    c: f64,
+    u: f64,
+    low: Edge,
+    high: Edge,
+    limits: Interval,
+}
+
+/// A place as seen from the measured value: its distance in standard uncertainties, and what lies beyond it.
+#[derive(Clone, Copy)]
+struct Edge {
+    z: f64,
+    /// Φ(-|z|); nothing past [`REACH`].
+    tail: f64,
+}
+
+impl Edge {
+    fn at(z: f64) -> Self {
+        Self {
+            z,
+            tail: if z.abs() > REACH {
+                0.0
+            } else {
+                cumulative(-z.abs())
+            },
+        }
+    }
+
+    /// The part of the measured value's distribution between two edges, taken on the side where both are small.
+    fn mass_to(self, upper: Self) -> f64 {
+        if upper.z <= self.z {
+            0.0
+        } else if self.z > 0.0 || upper.z < 0.0 {
+            (self.tail - upper.tail).abs()
+        } else {
+            1.0 - self.tail - upper.tail
+        }
+    }
+}
+
+impl View {
+    fn of(c: f64, u: f64, limits: Interval) -> Self {
+        let edge = |place: f64| Edge::at((place - c) / u);
+        Self {
+            c,
+            u,
+            low: edge(limits.low),
+            high: edge(limits.high),
+            limits,
+        }
+    }
+
+    fn edge(&self, place: f64) -> Edge {
+        Edge::at((place - self.c) / self.u)
+    }
+
+    fn of_normal(&self, weight: f64, mean: f64, deviation: f64) -> Evidence {
+        let (c, u) = (self.c, self.u);
+        let spread = deviation.hypot(u);
+        let total = weight * density(c, mean, spread);
+        if total == 0.0 {
+            return Evidence::default();
+        }
+        let posterior_mean = (deviation * deviation * c + u * u * mean) / (spread * spread);
+        let posterior_deviation = deviation * u / spread;
+        let low = (self.limits.low - posterior_mean) / posterior_deviation;
+        let high = (self.limits.high - posterior_mean) / posterior_deviation;
+        Evidence {
+            total,
+            inside: total * between(low, high),
+        }
+    }
+
+    /// Adds a flat piece of this height.
+    fn add_flat(&self, height: f64, (from, to): (Edge, Edge), sum: &mut Evidence) {
+        let inner = |one: Edge, other: Edge| if one.z < other.z { other } else { one };
+        let outer = |one: Edge, other: Edge| if one.z < other.z { one } else { other };
+        sum.total += height * from.mass_to(to);
+        sum.inside += height * inner(from, self.low).mass_to(outer(to, self.high));
+    }
+
+    /// Adds steps of a quarter decade from `start` up, of equal weight, flat inside a step: those within reach.
+    fn add_steps(&self, start: f64, weight: f64, n_steps: usize, sum: &mut Evidence) {
+        let edges = &QUARTER_DECADES[..=n_steps];
+        let lowest = (self.c - REACH * self.u) / start;
+        let highest = (self.c + REACH * self.u) / start;
+        let first = edges
+            .partition_point(|edge| *edge < lowest)
+            .saturating_sub(1);
+        let Some(within) = edges.get(first..) else {
+            return;
+        };
+        let mut steps = within.iter().map(|edge| (edge, self.edge(start * edge)));
+        let Some(mut from) = steps.next() else { return };
+        for to in steps {
+            let height = weight / (n_steps as f64 * start * (to.0 - from.0));
+            self.add_flat(height, (from.1, to.1), sum);
+            if *to.0 > highest {
+                return;
             }
-            Self::Flat { weight, low, high } => {
-                let reach = REACH * u;
-                if weight == 0.0 || c + reach < low || high < c - reach {
-                    return Evidence::default();
-                }
-                let height = weight / (high - low);
-                let mass = |from: f64, to: f64| {
-                    if from < to {
-                        between((from - c) / u, (to - c) / u)
-                    } else {
-                        0.0
-                    }
-                };
-                let total = height * mass(low, high);
-                let inside = height * mass(low.max(limits.low), high.min(limits.high));
-                Evidence { total, inside }
-            }
+            from = to;
         }
     }
 }
@@ -171,9 +250,7 @@ pub(super) fn flat_probability(c: f64, u: f64, limits: Interval) -> f64 {
 
 /// The hypothesis "none of these readings": log-uniform from 0.1 pF in 52 steps of a quarter decade.
 pub(super) fn unmarked_pieces() -> impl Iterator<Item = Piece> {
-    const SMALLEST: f64 = 0.1e-12;
-    const N_STEPS: usize = 52;
-    steps(SMALLEST, 1.0, N_STEPS)
+    steps(SMALLEST, 1.0, N_UNMARKED_STEPS)
 }
 
 /// Steps of a quarter decade from `start` up, of equal weight, flat inside a step.
@@ -192,13 +269,17 @@ fn steps(start: f64, weight: f64, n_steps: usize) -> impl Iterator<Item = Piece>
 
 /// The evidence of "none of these readings".
 pub(super) fn unmarked_evidence(c: f64, u: f64) -> f64 {
-    let everywhere = Interval {
-        low: 0.0,
-        high: f64::INFINITY,
-    };
-    unmarked_pieces()
-        .map(|piece| piece.evidence(c, u, everywhere).total)
-        .sum()
+    let view = View::of(
+        c,
+        u,
+        Interval {
+            low: 0.0,
+            high: f64::INFINITY,
+        },
+    );
+    let mut sum = Evidence::default();
+    view.add_steps(SMALLEST, 1.0, N_UNMARKED_STEPS, &mut sum);
+    sum.total
 }
 
 /// 10^(k/4) for k from 0 to 52.
@@ -267,12 +348,8 @@ mod tests {
     /// JCGM 106:2012, 9.5: resistors of N(1500 Ω, 0.12²), limits ±0.2 Ω, u = 0.04 Ω, one read at 1500.17 (recomputed).
     #[test]
     fn a_normal_prior_pulls_the_value_towards_what_is_made() {
-        let piece = Piece::Normal {
-            weight: 1.0,
-            mean: 1500.0,
-            deviation: 0.12,
-        };
-        let evidence = piece.evidence(1500.17, 0.04, interval(1499.8, 1500.2));
+        let evidence =
+            View::of(1500.17, 0.04, interval(1499.8, 1500.2)).of_normal(1.0, 1500.0, 0.12);
         assert!((evidence.inside / evidence.total - 0.892_246).abs() < 1e-6);
         assert!(
             (flat_probability(1500.17, 0.04, interval(1499.8, 1500.2)) - 0.773_373).abs() < 1e-6
