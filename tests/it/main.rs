@@ -10,6 +10,7 @@ mod logs;
 mod markings;
 mod planted;
 mod profiles;
+mod properties;
 mod pty;
 mod screens;
 mod table;
