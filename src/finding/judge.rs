@@ -2,11 +2,11 @@
 
 use super::advice::advise;
 use super::loss::{LossVerdict, judge_loss};
-use super::parked::Window;
-use super::prior::{Evidence, Interval, Prior, flat_probability, unmarked_evidence};
+use super::prior::Interval;
+use super::rank::{Ranked, Weighed};
 use super::{
-    Circumstances, HouseRules, Limits, Observation, PriorKind, ReadingCertainty, Slip, Standing,
-    Tested, Verdict, Word, expect, limits, remark, slip,
+    Circumstances, HouseRules, Observation, PriorKind, ReadingCertainty, Slip, Tested, Verdict,
+    Word, expect, remark, slip,
 };
 use crate::marking::{Decoding, Reading};
 use crate::meter::{DialReading, Estimate, Lamp, Part, Seen, Stop, Value, predict};
@@ -31,7 +31,12 @@ pub fn judge(
         circumstances,
         rules,
     };
-    let ranked = Ranked::of(&case, chosen);
+    let ranked = Ranked::of(
+        &decoding.readings,
+        chosen,
+        observation.measured.value,
+        rules,
+    );
     let Some(index) = ranked.chosen else {
         return case.without_reading(ranked);
     };
@@ -45,71 +50,6 @@ struct Case<'a> {
     observation: &'a Observation<'a>,
     circumstances: &'a Circumstances,
     rules: &'a HouseRules,
-}
-
-/// One reading of the marking, weighed by the measurement.
-struct Weighed {
-    limits: Limits,
-    prior: Prior,
-    evidence: Evidence,
-    probability_flat: Option<f64>,
-}
-
-/// The readings after the measurement.
-struct Ranked {
-    weighed: Vec<Weighed>,
-    ranking: Vec<Standing>,
-    chosen: Option<usize>,
-}
-
-impl Ranked {
-    fn of(case: &Case<'_>, chosen: Option<usize>) -> Self {
-        let weighed: Vec<Weighed> = case
-            .decoding
-            .readings
-            .iter()
-            .map(|reading| case.weigh(reading))
-            .collect();
-        let plausibilities = case.decoding.readings.iter().map(|r| r.plausibility);
-        let remainder = (1.0 - plausibilities.clone().sum::<f64>()).max(0.0);
-        let mut ranking: Vec<Standing> = weighed
-            .iter()
-            .zip(plausibilities)
-            .enumerate()
-            .map(|(index, (w, plausibility))| Standing {
-                reading: Some(index),
-                posterior: plausibility * w.evidence.total,
-            })
-            .collect();
-        ranking.push(Standing {
-            reading: None,
-            posterior: remainder * case.unmarked(),
-        });
-        let total: f64 = ranking.iter().map(|s| s.posterior).sum();
-        for standing in &mut ranking {
-            standing.posterior = if total > 0.0 {
-                standing.posterior / total
-            } else {
-                0.0
-            };
-        }
-        // Stable: readings that the measurement leaves alike keep the order of their plausibility.
-        ranking.sort_by(|x, y| y.posterior.total_cmp(&x.posterior));
-        let best = ranking.iter().find_map(|standing| standing.reading);
-        let chosen = chosen.filter(|index| *index < weighed.len()).or(best);
-        Self {
-            weighed,
-            ranking,
-            chosen,
-        }
-    }
-
-    fn posterior(&self, reading: usize) -> f64 {
-        self.ranking
-            .iter()
-            .find(|s| s.reading == Some(reading))
-            .map_or(0.0, |s| s.posterior)
-    }
 }
 
 /// A word with what goes with it.
@@ -158,65 +98,7 @@ impl Said {
     }
 }
 
-impl Weighed {
-    fn probability(&self) -> f64 {
-        if self.evidence.total > 0.0 {
-            self.evidence.inside / self.evidence.total
-        } else {
-            0.0
-        }
-    }
-}
-
 impl Case<'_> {
-    fn weigh(&self, reading: &Reading) -> Weighed {
-        let limits = limits(reading, self.rules);
-        let prior = Prior::of(reading.capacitance, limits.made_to, self.rules);
-        let interval = Interval::of(&limits);
-        let (evidence, probability_flat) = match self.observation.measured.value {
-            Value::Estimate(estimate) => {
-                let (c, u) = value_and_uncertainty(estimate);
-                (
-                    prior.evidence(c, u, interval),
-                    Some(flat_probability(c, u, interval)),
-                )
-            }
-            Value::Window { lamp, low, high } => {
-                let window = Window { lamp, low, high };
-                (
-                    window.evidence(prior, interval),
-                    window.flat_probability(interval),
-                )
-            }
-            // Nothing measured weighs all readings alike.
-            Value::Open | Value::Unknown => (
-                Evidence {
-                    total: 1.0,
-                    inside: 0.0,
-                },
-                None,
-            ),
-        };
-        Weighed {
-            limits,
-            prior,
-            evidence,
-            probability_flat,
-        }
-    }
-
-    /// The evidence of "none of these readings".
-    fn unmarked(&self) -> f64 {
-        match self.observation.measured.value {
-            Value::Estimate(estimate) => {
-                let (c, u) = value_and_uncertainty(estimate);
-                unmarked_evidence(c, u)
-            }
-            Value::Window { lamp, low, high } => Window { lamp, low, high }.unmarked_evidence(),
-            Value::Open | Value::Unknown => 1.0,
-        }
-    }
-
     fn decide(&self, ranked: Ranked, index: usize, reading: &Reading) -> Verdict {
         let measured = self.observation.measured;
         let weighed = &ranked.weighed[index];
@@ -458,13 +340,6 @@ fn word_of(probability: f64, rules: &HouseRules) -> Word {
     } else {
         Word::Undecided
     }
-}
-
-/// A meter without any doubt still leaves a billionth, so that no division is by zero.
-fn value_and_uncertainty(estimate: Estimate) -> (f64, f64) {
-    let combined = estimate.combined();
-    let c = combined.value.get();
-    (c, combined.standard_uncertainty.get().max(1e-9 * c))
 }
 
 fn low_resistance_stop(observation: &Observation<'_>) -> DialReading {

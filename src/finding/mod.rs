@@ -10,6 +10,7 @@ mod loss;
 mod normal;
 mod parked;
 mod prior;
+mod rank;
 mod remark;
 mod slip;
 mod verdict;

@@ -1,0 +1,184 @@
+//! `decode` and `predict`.
+
+use expect_test::expect;
+
+use super::{check, run};
+
+#[test]
+fn decode_for_people() {
+    check(
+        &["decode", "224J 2A"],
+        "",
+        expect![[r#"
+            224J 2A
+              220000 pF = 220 nF = 0.22 µF, plausibility 99.9 %
+                limits         209 nF to 231 nF, ±5 %
+                voltage        100 V dc
+                used           `224` value, `J` tolerance, `2A` voltage
+                why            224: two figures and a power of ten, in pF (EIA-198); J: tolerance letter for ±5 %; 2A: a digit and a letter: rated voltage (JIS C 5101-1)
+            exit 0
+        "#]],
+    );
+    check(
+        &["decode", "224J | 100V", "X7R"],
+        "",
+        expect![[r#"
+            224J | 100V
+              220000 pF = 220 nF = 0.22 µF, plausibility 99.5 %
+                limits         209 nF to 231 nF, ±5 %
+                voltage        100 V dc
+                used           `224` value, `J` tolerance, `100V` voltage
+                why            224: two figures and a power of ten, in pF (EIA-198); J: tolerance letter for ±5 %; 100V: the voltage is printed with its unit
+              or 220 nF, no tolerance marked, 6.3 V dc, plausibility 0.3 %
+                why            224: two figures and a power of ten, in pF (EIA-198); J: voltage letter of chip parts for 6.3 V; 100V: the voltage is printed with its unit; 100V: a second rated voltage, which contradicts what was taken
+
+            X7R
+              no reading
+                unexplained    X7R
+            exit 1
+        "#]],
+    );
+}
+
+#[test]
+fn decode_for_scripts() {
+    check(
+        &["decode", "--json", "224J 2A"],
+        "",
+        expect![[r#"
+            {"marking":"224J 2A","readings":[{"capacitance_pF":220000.0,"low_pF":209000.0,"high_pF":231000.0,"tolerance":"±5 %","rated_voltage_V":100.0,"voltage_kind":"dc","rated_voltage_ac_V":null,"family":null,"dielectric":null,"temperature_characteristic":null,"safety_class":null,"date":null,"sections_pF":null,"plausibility":0.9993661504,"used":[{"text":"224","as":"value"},{"text":"J","as":"tolerance"},{"text":"2A","as":"voltage"}],"unexplained":[],"why":["224: two figures and a power of ten, in pF (EIA-198)","J: tolerance letter for ±5 %","2A: a digit and a letter: rated voltage (JIS C 5101-1)"]}],"unexplained":[],"omitted":0}
+            exit 0
+        "#]],
+    );
+    check(
+        &["decode", "--json", "GMV", "4n7 GMV"],
+        "",
+        expect![[r#"
+            [{"marking":"GMV","readings":[],"unexplained":["GMV"],"omitted":0},{"marking":"4n7 GMV","readings":[{"capacitance_pF":4700.0,"low_pF":4700.0,"high_pF":null,"tolerance":"GMV","rated_voltage_V":null,"voltage_kind":null,"rated_voltage_ac_V":null,"family":null,"dielectric":null,"temperature_characteristic":null,"safety_class":null,"date":null,"sections_pF":null,"plausibility":0.999955931762,"used":[{"text":"4n7","as":"value"},{"text":"GMV","as":"tolerance"}],"unexplained":[],"why":["4n7: n with figures: nF (IEC 60062)","GMV: the tolerance is written out"]}],"unexplained":[],"omitted":0}]
+            exit 1
+        "#]],
+    );
+    check(
+        &["decode", "--json", "--family", "pp", "-"],
+        "104K\r\n\n473",
+        expect![[r#"
+            {"marking":"104K","readings":[{"capacitance_pF":100000.0,"low_pF":90000.0,"high_pF":110000.0,"tolerance":"±10 %","rated_voltage_V":null,"voltage_kind":null,"rated_voltage_ac_V":null,"family":"film","dielectric":"pp","temperature_characteristic":null,"safety_class":null,"date":null,"sections_pF":null,"plausibility":0.999208923123,"used":[{"text":"104","as":"value"},{"text":"K","as":"tolerance"}],"unexplained":[],"why":["104: two figures and a power of ten, in pF (EIA-198)","K: tolerance letter for ±10 %"]}],"unexplained":[],"omitted":0}
+            {"marking":"","readings":[],"unexplained":[],"omitted":0}
+            {"marking":"473","readings":[{"capacitance_pF":47000.0,"low_pF":null,"high_pF":null,"tolerance":null,"rated_voltage_V":null,"voltage_kind":null,"rated_voltage_ac_V":null,"family":"film","dielectric":"pp","temperature_characteristic":null,"safety_class":null,"date":null,"sections_pF":null,"plausibility":0.997446418425,"used":[{"text":"473","as":"value"}],"unexplained":[],"why":["473: two figures and a power of ten, in pF (EIA-198)"]}],"unexplained":[],"omitted":0}
+            exit 1
+        "#]],
+    );
+}
+
+#[test]
+fn decode_takes_any_bytes() {
+    let mut input = b"224J \xff\x1b[31m\n".to_vec();
+    input.extend([b'9'; 5000]);
+    input.extend(b"\n104K\n");
+    let output = run(&["decode", "-"], &input);
+    assert!(!output.contains('\u{1b}'), "{output}");
+    assert!(output.contains('\u{fffd}'), "{output}");
+    assert!(
+        output.contains("! line 2 is longer than 4096 bytes: the rest of it is not read\n"),
+        "{output}"
+    );
+    assert!(output.ends_with("exit 1\n"));
+}
+
+#[test]
+fn predict() {
+    check(
+        &["predict", "--meter", "meter.toml", "473K", "--family", "pp"],
+        "",
+        expect![[r#"
+            473K
+              47 nF ±10 %, plausibility 99.9 %
+                switch mid, dial 6.25
+                dark from 6.09 to 6.41
+                good parts from 5.69 to 6.81
+                loss 0.0003 assumed, 1.16 V peak on the part
+                one reading there is good to ±2.12 % (k = 2)
+            exit 0
+        "#]],
+    );
+    check(
+        &["predict", "--meter", "meter.toml", "--json", "473K"],
+        "",
+        expect![[r#"
+            {"marking":"473K","readings":[{"capacitance_pF":47000.0,"loss":0.0,"plausibility":0.999517868725,"switch":"mid","balance":6.24385737936,"beyond":null,"residual_V":0.000319540406246,"goes_dark":true,"dark_from":6.0893896595,"dark_to":6.40580348193,"expected":6.24759657072,"band_from":5.68539975907,"band_to":6.80998186279,"band_cut":false,"part_voltage_V":1.16282563825,"uncertainty_percent":1.06026816465,"warnings":[]}]}
+            exit 0
+        "#]],
+    );
+    check(
+        &[
+            "predict",
+            "--meter",
+            "meter.toml",
+            "--json",
+            "--switch",
+            "low",
+            "--loss",
+            "2 %",
+            "--capacitance",
+            "2n2",
+        ],
+        "",
+        expect![[r#"
+            {"marking":null,"readings":[{"capacitance_pF":2200.0,"loss":0.02,"plausibility":null,"switch":"low","balance":0.0,"beyond":"low","residual_V":0.0760471917035,"goes_dark":false,"dark_from":null,"dark_to":null,"expected":null,"band_from":null,"band_to":null,"band_cut":null,"part_voltage_V":2.89955536487,"uncertainty_percent":null,"warnings":["nulls beyond the low stop; take switch high"]}]}
+            exit 0
+        "#]],
+    );
+    check(
+        &[
+            "predict",
+            "--meter",
+            "meter.toml",
+            "--switch",
+            "hihg",
+            "473K",
+        ],
+        "",
+        expect![[r#"
+            ! Hut meter has no switch `hihg`; did you mean `high`? Known: low, mid, high
+            exit 2
+        "#]],
+    );
+    check(
+        &["predict", "--meter", "meter.toml", "--loss", "-1", "473K"],
+        "",
+        expect![[r#"
+            ! error: unexpected argument '-1' found
+            ! 
+            !   tip: to pass '-1' as a value, use '-- -1'
+            ! 
+            ! Usage: nulltray predict [OPTIONS] [MARKING]
+            ! 
+            ! For more information, try '--help'.
+            exit 2
+        "#]],
+    );
+    check(
+        &["predict", "--meter", "meter.toml", "--capacitance", "0 F"],
+        "",
+        expect![[r#"
+            ! --capacitance 0 F: a capacitance above zero is needed
+            exit 2
+        "#]],
+    );
+    check(
+        &["predict", "--meter", "absent.toml", "473K"],
+        "",
+        expect![[r#"
+            ! cannot read absent.toml: there is no such file
+            exit 3
+        "#]],
+    );
+    check(
+        &["predict", "--meter", ".", "473K"],
+        "",
+        expect![[r#"
+        ! cannot read .: it is a folder
+        exit 3
+    "#]],
+    );
+}

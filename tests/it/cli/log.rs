@@ -1,0 +1,169 @@
+//! `log`.
+
+use std::fs;
+use std::path::Path;
+
+use chrono::DateTime;
+use expect_test::expect;
+use nulltray::app::{Outcome, Raw, Record, RecordKind};
+use nulltray::log::Log;
+
+use super::Folder;
+
+/// A log of one lot with two parts, written at a fixed time.
+fn log_in(folder: &Folder) -> String {
+    let path = folder.file("parts.db");
+    let (mut log, _) = Log::open(Path::new(&path)).expect("a new log");
+    for (n, marking) in ["224J", "=473K"].into_iter().enumerate() {
+        let time = format!("2026-05-03T10:0{n}:00+02:00");
+        let record = Record {
+            lot: "hut 4".to_owned(),
+            kind: RecordKind::Part,
+            raw: Raw {
+                marking: marking.to_owned(),
+                switch: "mid".to_owned(),
+                dial: Some("4.1".to_owned()),
+                note: Some("from the north relay".to_owned()),
+                typed: "4.1".to_owned(),
+                ..Raw::default()
+            },
+            outcome: Outcome {
+                nominal_pf: Some(220_000.0),
+                capacitance_pf: Some(217_430.0),
+                uncertainty_pf: Some(2050.0),
+                deviation_percent: Some(-1.168_181_818_181_818),
+                finding: "inside".to_owned(),
+                compartment: Some("A1".to_owned()),
+                ..Outcome::default()
+            },
+            replaces: None,
+        };
+        let time = DateTime::parse_from_rfc3339(&time).expect("a time");
+        log.append(&record, time, "name = \"a\"\n")
+            .expect("an entry");
+    }
+    path
+}
+
+fn today() -> String {
+    chrono::Utc::now().format("%Y-%m-%d").to_string()
+}
+
+#[test]
+fn the_log_for_people() {
+    let folder = Folder::new("show");
+    let log = log_in(&folder);
+    let say = |arguments: &[&str]| folder.run(&[&["--log", &log, "log"], arguments].concat(), b"");
+    expect![[r#"
+        id  time              lot    marking  switch  reading  value (k = 2)      finding  place
+        1   2026-05-03 10:00  hut 4  224J     mid     4.1      217.4 nF ± 4.1 nF  inside   A1
+        2   2026-05-03 10:01  hut 4  =473K    mid     4.1      217.4 nF ± 4.1 nF  inside   A1
+        exit 0
+    "#]]
+    .assert_eq(&say(&["show"]));
+    expect![[r#"
+        id  time              lot    marking  switch  reading  value (k = 2)      finding  place
+        2   2026-05-03 10:01  hut 4  =473K    mid     4.1      217.4 nF ± 4.1 nF  inside   A1
+        exit 0
+    "#]]
+    .assert_eq(&say(&["find", "473", "north"]));
+    expect![[r#"
+        ! no entry resembles zzz
+        exit 1
+    "#]]
+    .assert_eq(&say(&["find", "zzz"]));
+    expect![[r#"
+        ! nothing of lot TODAY can be taken back
+        !   another lot is named with --lot NAME; `nulltray log show` has their names
+        exit 1
+    "#]]
+    .assert_eq(&say(&["undo"]).replace(&today(), "TODAY"));
+    expect![[r#"
+        taken back: 2 =473K, inside
+        exit 0
+    "#]]
+    .assert_eq(&say(&["undo", "--lot", "hut 4"]));
+    expect![[r#"
+        brought back: 2 =473K, inside
+        exit 0
+    "#]]
+    .assert_eq(&say(&["redo", "--lot", "hut 4"]));
+    expect![[r#"
+        DIR/parts.db copied to DIR/copy.db
+        exit 0
+    "#]]
+    .assert_eq(&say(&["backup", &folder.file("copy.db")]));
+    expect![[r#"
+        ! cannot back up to DIR/copy.db: a file of that name is there already
+        !   give another name
+        exit 3
+    "#]]
+    .assert_eq(&say(&["backup", &folder.file("copy.db")]));
+    expect![[r#"
+        DIR/parts.db: log, undamaged
+        DIR/copy.db: log, undamaged
+        exit 0
+    "#]]
+    .assert_eq(&folder.run(&["check", &log, &folder.file("copy.db")], b""));
+    expect![[r#"
+        ! cannot open DIR/absent.db: there is no such file
+        !   check the path
+        exit 3
+    "#]]
+    .assert_eq(&folder.run(&["--log", &folder.file("absent.db"), "log", "undo"], b""));
+    assert!(!folder.0.join("absent.db").exists(), "undo makes no log");
+}
+
+#[test]
+fn the_log_for_scripts() {
+    let folder = Folder::new("export");
+    let log = log_in(&folder);
+    let say = |arguments: &[&str]| folder.run(&[&["--log", &log, "log"], arguments].concat(), b"");
+    expect![[r#"
+        id,time,lot,voided,profile,marking,family,switch,dial,dark_from,dark_to,lamp,temperature,heated_hours,leakage,leakage_voltage,looks,note,nominal_pF,low_pF,high_pF,limits_from,capacitance_pF,uncertainty_pF,loss,loss_below,deviation_percent,probability_inside,probability_flat,reading_probability,finding,compartment,remark
+        1,2026-05-03T10:00:00+02:00,hut 4,,d0f6c0c7,224J,,mid,4.1,,,,,,,,,from the north relay,220000,,,,217430,2050,,,-1.16818181818,,,,inside,A1,
+        2,2026-05-03T10:01:00+02:00,hut 4,,d0f6c0c7,'=473K,,mid,4.1,,,,,,,,,from the north relay,220000,,,,217430,2050,,,-1.16818181818,,,,inside,A1,
+        exit 0
+    "#]].assert_eq(&say(&["export"]));
+    expect![[r#"
+        [
+        {"id":1,"time":"2026-05-03T10:00:00+02:00","lot":"hut 4","voided":null,"profile":"d0f6c0c7","marking":"224J","family":null,"switch":"mid","dial":4.1,"dark_from":null,"dark_to":null,"lamp":null,"temperature":null,"heated_hours":null,"leakage":null,"leakage_voltage":null,"looks":null,"note":"from the north relay","nominal_pF":220000,"low_pF":null,"high_pF":null,"limits_from":null,"capacitance_pF":217430,"uncertainty_pF":2050,"loss":null,"loss_below":null,"deviation_percent":-1.16818181818,"probability_inside":null,"probability_flat":null,"reading_probability":null,"finding":"inside","compartment":"A1","remark":null},
+        {"id":2,"time":"2026-05-03T10:01:00+02:00","lot":"hut 4","voided":null,"profile":"d0f6c0c7","marking":"=473K","family":null,"switch":"mid","dial":4.1,"dark_from":null,"dark_to":null,"lamp":null,"temperature":null,"heated_hours":null,"leakage":null,"leakage_voltage":null,"looks":null,"note":"from the north relay","nominal_pF":220000,"low_pF":null,"high_pF":null,"limits_from":null,"capacitance_pF":217430,"uncertainty_pF":2050,"loss":null,"loss_below":null,"deviation_percent":-1.16818181818,"probability_inside":null,"probability_flat":null,"reading_probability":null,"finding":"inside","compartment":"A1","remark":null}
+        ]
+        exit 0
+    "#]].assert_eq(&say(&["export", "--format", "json", "--lot", "hut 4"]));
+    expect![[r#"
+        id,time,lot,voided,profile,marking,family,switch,dial,dark_from,dark_to,lamp,temperature,heated_hours,leakage,leakage_voltage,looks,note,nominal_pF,low_pF,high_pF,limits_from,capacitance_pF,uncertainty_pF,loss,loss_below,deviation_percent,probability_inside,probability_flat,reading_probability,finding,compartment,remark
+        exit 0
+    "#]].assert_eq(&say(&["export", "--lot", "hut 5"]));
+}
+
+#[test]
+fn a_damaged_log_is_exported_as_far_as_it_can_be_read() {
+    let folder = Folder::new("salvage");
+    let log = log_in(&folder);
+    let mut bytes = fs::read(&log).expect("the log");
+    let at = bytes
+        .windows(5)
+        .position(|window| window == b"=473K")
+        .expect("the marking is stored as it is");
+    if let Some(byte) = bytes.get_mut(at) {
+        *byte = b'-';
+    }
+    fs::write(&log, bytes).expect("the log again");
+    expect![[r#"
+        id,time,lot,voided,profile,marking,family,switch,dial,dark_from,dark_to,lamp,temperature,heated_hours,leakage,leakage_voltage,looks,note,nominal_pF,low_pF,high_pF,limits_from,capacitance_pF,uncertainty_pF,loss,loss_below,deviation_percent,probability_inside,probability_flat,reading_probability,finding,compartment,remark
+        1,2026-05-03T10:00:00+02:00,hut 4,,d0f6c0c7,224J,,mid,4.1,,,,,,,,,from the north relay,220000,,,,217430,2050,,,-1.16818181818,,,,inside,A1,
+        ! cannot read DIR/parts.db: it is damaged: entry 2 is not as it was written (check sum)
+        ! entry 2: entry 2 is not as it was written (check sum)
+        ! entry 2 is missing
+        !   1 entry could still be read and exported; a backup may hold the others
+        exit 3
+    "#]].assert_eq(&folder.run(&["--log", &log, "log", "export"], b""));
+    expect![[r#"
+        DIR/parts.db: entry 2: entry 2 is not as it was written (check sum)
+        DIR/parts.db: its counts do not agree with its entries
+        exit 1
+    "#]]
+    .assert_eq(&folder.run(&["check", &log], b""));
+}
