@@ -8,6 +8,7 @@ mod balance;
 mod circuit;
 mod dial;
 mod estimate;
+pub mod fit;
 mod model;
 mod part;
 mod predict;

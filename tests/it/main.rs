@@ -14,4 +14,5 @@ mod properties;
 mod pty;
 mod screens;
 mod table;
+mod strd;
 mod tables;
