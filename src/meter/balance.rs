@@ -257,6 +257,20 @@ impl DialLaw {
         }
     }
 
+    /// Both roots of the dark condition; where it is met nowhere, twice the place that comes nearest to it, so that a fit
+    /// may pass through. `None` where no arc lies between two of them.
+    pub(super) fn edges_or_nearest(&self, threshold: f64) -> Option<(f64, f64)> {
+        let (n0, n1, n2) = self.numerator();
+        let (d1, d2) = self.denominator();
+        let v2 = threshold * threshold;
+        let (a, b) = (n2 - v2 * d2, n1 - v2 * d1);
+        match quadratic(a, b, n0 - v2) {
+            Roots::Two(r1, r2) if a > 0.0 => Some((r1, r2)),
+            Roots::None if a > 0.0 => Some((-0.5 * b / a, -0.5 * b / a)),
+            _ => None,
+        }
+    }
+
     /// The piece of the dial around the balance over which |Δ| stays within a factor of its least value, ohm, clipped.
     pub(super) fn shallow_span(&self, factor: f64, span: ResistanceSpan) -> Option<DarkSpan> {
         let least = self.best_balance(span).residual;

@@ -5,12 +5,15 @@
 
 mod arc;
 mod balance;
+mod calibrate;
 mod circuit;
 mod dial;
 mod estimate;
 pub mod fit;
+mod forecast;
 mod model;
 mod part;
+mod plain;
 mod predict;
 mod profile;
 mod read;
@@ -19,7 +22,13 @@ mod read_dial;
 mod route;
 mod seen;
 
+pub use calibrate::{
+    Calibrated, CalibrationReport, Contradiction, NextPart, NotCalibrated, Parameter, PartCheck,
+    ReferenceReading, Residual, Robust, RobustChange, RowFault, RowFaultKind, SwitchGain,
+    calibrate, calibrate_quickly,
+};
 pub use estimate::measure;
+pub use forecast::NumberRead;
 pub use predict::{Null, best_switch, null, predict};
 
 pub use part::{

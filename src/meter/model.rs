@@ -60,6 +60,50 @@ pub(super) struct Fit {
     pub(super) places: Vec<[Option<usize>; N_CONSTANTS]>,
 }
 
+/// The names under which a calibration stores its constants, in their order.
+pub(super) fn stored_names(meter: &Meter) -> Vec<String> {
+    let mut names: Vec<String> = meter.switches.iter().map(|s| s.label.clone()).collect();
+    let shared = SHARED.iter().filter(|(i, _)| has_constant(meter, *i));
+    names.extend(shared.map(|(_, name)| (*name).to_owned()));
+    names
+}
+
+/// For each switch, where its six constants stand among the stored ones.
+pub(super) fn places(meter: &Meter) -> Vec<[Option<usize>; N_CONSTANTS]> {
+    let n_switches = meter.switches.len();
+    (0..n_switches)
+        .map(|position| {
+            let mut places = [Some(position); N_CONSTANTS];
+            let mut next = n_switches;
+            for (i, _) in SHARED {
+                places[i] = has_constant(meter, i).then_some(next);
+                next += usize::from(has_constant(meter, i));
+            }
+            places
+        })
+        .collect()
+}
+
+/// The constants that all switches share.
+const SHARED: [(usize, &str); N_CONSTANTS - 1] = [
+    (1, "reference"),
+    (2, "dial_total"),
+    (DIAL_END, "dial_end"),
+    (STRAY, "stray"),
+    (5, "threshold"),
+];
+
+/// Where the dial end stands among the constants of a switch.
+pub(super) const DIAL_END: usize = 3;
+
+/// Where the stray capacitance stands among the constants of a switch.
+pub(super) const STRAY: usize = 4;
+
+/// Measured points have no end resistance of their own.
+fn has_constant(meter: &Meter, constant: usize) -> bool {
+    constant != DIAL_END || matches!(meter.dial.taper, Taper::Linear { .. })
+}
+
 impl Model {
     /// A model without switches, to be replaced before it is used.
     pub(super) fn empty() -> Self {
@@ -99,6 +143,11 @@ impl Model {
 
     pub(super) fn constants(&self, switch: Switch) -> &Constants {
         &self.switches[switch.0].constants
+    }
+
+    /// Standard uncertainties of the constants of a switch: relative, but for dial end and stray.
+    pub(super) fn uncertainties(&self, switch: Switch) -> &[f64; N_CONSTANTS] {
+        &self.switches[switch.0].u
     }
 
     /// Standard uncertainty of the mean of n readings of one position, in dial units: repeatability averages out, the

@@ -67,17 +67,16 @@ impl Meter {
 /// Returns the CRC-32, eight lower-case hexadecimal digits, of the bytes before the line `[calibration]` (of the whole
 /// text, if there is no such line).
 pub(super) fn profile_hash(text: &str) -> String {
-    let mut n_before = 0;
-    for line in text.split_inclusive('\n') {
-        if line.trim_end().starts_with("[calibration]") {
-            break;
-        }
-        n_before += line.len();
-    }
-    format!(
-        "{:08x}",
-        crc32fast::hash(text.get(..n_before).unwrap_or(text).as_bytes())
-    )
+    let before = text.get(..calibration_starts(text)).unwrap_or(text);
+    format!("{:08x}", crc32fast::hash(before.as_bytes()))
+}
+
+/// Returns how many bytes stand before the line `[calibration]`; all of them, if there is no such line.
+pub(super) fn calibration_starts(text: &str) -> usize {
+    text.split_inclusive('\n')
+        .take_while(|line| !line.trim_end().starts_with("[calibration]"))
+        .map(str::len)
+        .sum()
 }
 
 /// Reads everything but the calibration. The parts are read one after the other before any is missed, so that one

@@ -2,8 +2,8 @@
 
 use toml::de::DeValue;
 
-use super::model::{Fit, N_CONSTANTS};
-use super::{Calibration, Meter, Taper};
+use super::model::{Fit, places, stored_names};
+use super::{Calibration, Meter};
 use crate::tables::document::{Bound, Document, Need, Placed, Section};
 
 /// Reads the calibration with the hash of the profile that it belongs to.
@@ -49,12 +49,7 @@ pub(super) fn read_calibration(
 }
 
 fn read_fit(document: &mut Document<'_>, section: &Section<'_>, meter: &Meter) -> Option<Fit> {
-    let mut expected: Vec<String> = meter.switches.iter().map(|s| s.label.clone()).collect();
-    expected.extend(["reference", "dial_total"].map(str::to_owned));
-    if matches!(meter.dial.taper, Taper::Linear { .. }) {
-        expected.push("dial_end".to_owned());
-    }
-    expected.extend(["stray", "threshold"].map(str::to_owned));
+    let expected = stored_names(meter);
     let n = expected.len();
     let names = document.items(section, "names", n + 1, Need::Required)?;
     let found: Vec<&str> = names
@@ -91,29 +86,15 @@ fn read_fit(document: &mut Document<'_>, section: &Section<'_>, meter: &Meter) -
     if !is_covariance(&covariance) {
         document.complain(
             rows.at,
-            "`covariance` is not symmetric with positive variances and correlations from -1 to 1"
+            "`covariance` is not symmetric with variances that are not negative and correlations from -1 to 1"
                 .into(),
         );
         return None;
     }
-    let at = |name: &str| expected.iter().position(|e| e == name);
-    let places = (0..meter.switches.len())
-        .map(|position| {
-            let places: [Option<usize>; N_CONSTANTS] = [
-                Some(position),
-                at("reference"),
-                at("dial_total"),
-                at("dial_end"),
-                at("stray"),
-                at("threshold"),
-            ];
-            places
-        })
-        .collect();
     Some(Fit {
         estimate: estimate?,
         covariance,
-        places,
+        places: places(meter),
     })
 }
 
@@ -153,14 +134,14 @@ fn numbers(
         .collect()
 }
 
-/// Variances positive, correlations symmetric and at most 1 to a part in a million.
+/// Variances not negative (0: known exactly), correlations symmetric and at most 1 to a part in a million.
 fn is_covariance(rows: &[Vec<f64>]) -> bool {
     let deviations: Vec<f64> = rows
         .iter()
         .enumerate()
         .map(|(i, row)| row[i].sqrt())
         .collect();
-    deviations.iter().all(|d| *d > 0.0)
+    deviations.iter().all(|d| *d >= 0.0)
         && rows.iter().enumerate().all(|(i, row)| {
             row.iter().enumerate().all(|(j, v)| {
                 let scale = deviations[i] * deviations[j];

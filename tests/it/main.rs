@@ -2,6 +2,7 @@
 
 mod balance;
 mod cli;
+mod calibrate;
 mod example;
 mod judge;
 mod killed;
@@ -16,3 +17,4 @@ mod screens;
 mod table;
 mod strd;
 mod tables;
+mod truth;
