@@ -15,6 +15,7 @@ mod properties;
 mod pty;
 mod screens;
 mod table;
+mod stated;
 mod strd;
 mod tables;
 mod truth;
