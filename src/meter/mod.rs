@@ -7,10 +7,12 @@ mod arc;
 mod balance;
 mod calibrate;
 mod circuit;
+mod coverage;
 mod dial;
 mod estimate;
 pub mod fit;
 mod forecast;
+mod improve;
 mod model;
 mod part;
 mod plain;
@@ -27,8 +29,10 @@ pub use calibrate::{
     ReferenceReading, Residual, Robust, RobustChange, RowFault, RowFaultKind, SwitchGain,
     calibrate, calibrate_quickly,
 };
+pub use coverage::{Coverage, Covered, SwitchCoverage, coverage};
 pub use estimate::measure;
 pub use forecast::NumberRead;
+pub use improve::{Change, Improvement};
 pub use predict::{Null, best_switch, null, predict};
 
 pub use part::{

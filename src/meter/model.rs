@@ -1,7 +1,7 @@
 //! The constants of a meter with their uncertainties, ready for use: worked out once when a profile is read.
 
 use super::circuit::{Circuit, Constants};
-use super::{Meter, Source, Switch, Taper};
+use super::{Change, Difference, Meter, Source, Switch, Taper};
 
 /// How many constants a reading on one switch depends on.
 pub(super) const N_CONSTANTS: usize = 6;
@@ -163,6 +163,44 @@ impl Model {
             half_width: 0.5 * self.division,
         }
         .standard_uncertainty()
+    }
+
+    /// The model with one thing about the meter bettered by half.
+    pub(super) fn bettered(&self, change: Change) -> Self {
+        let mut model = self.clone();
+        let known: &[usize] = match change {
+            Change::RangeResistors => &[0],
+            Change::Reference => &[1],
+            Change::Dial => &[2, DIAL_END],
+            Change::Stray => &[STRAY],
+            Change::Threshold => &[5],
+            Change::Calibration => &[0, 1, 2, DIAL_END, STRAY, 5],
+            Change::Scale => {
+                model.repeatability *= 0.5;
+                model.division *= 0.5;
+                &[]
+            }
+            Change::Lamp => {
+                for switch in &mut model.switches {
+                    switch.constants.vth *= 0.5;
+                }
+                &[]
+            }
+            Change::DifferenceResistors => {
+                model.circuit.difference = match model.circuit.difference {
+                    Difference::Buffered => Difference::Buffered,
+                    Difference::Divider(rd) => Difference::Divider(rd * 2.0),
+                    Difference::Inverting(rd) => Difference::Inverting(rd * 2.0),
+                };
+                &[]
+            }
+        };
+        for switch in &mut model.switches {
+            for i in known {
+                switch.u[*i] *= 0.5;
+            }
+        }
+        model
     }
 
     /// The constants with one after the other moved by `step` standard uncertainties; `None` where one has none.

@@ -189,7 +189,12 @@ impl<'a> View<'a> {
 }
 
 /// The relative standard uncertainty of a single reading where the part is expected.
-fn uncertainty(meter: &Meter, switch: Switch, sight: &Null, part: &Part) -> Option<Fraction> {
+pub(super) fn uncertainty(
+    meter: &Meter,
+    switch: Switch,
+    sight: &Null,
+    part: &Part,
+) -> Option<Fraction> {
     let seen = match (sight.arc, sight.beyond) {
         (Some(arc), _) if arc.cut != Cut::Both => Seen::Middle(Repeats::once(middle(arc))),
         (Some(_), _) | (None, Some(_)) => return None,

@@ -3,6 +3,7 @@
 mod balance;
 mod cli;
 mod calibrate;
+mod coverage;
 mod example;
 mod judge;
 mod killed;
