@@ -1,8 +1,8 @@
 //! The integration tests, one binary: a module a subject.
 
 mod balance;
-mod cli;
 mod calibrate;
+mod cli;
 mod coverage;
 mod example;
 mod judge;
@@ -15,8 +15,8 @@ mod profiles;
 mod properties;
 mod pty;
 mod screens;
-mod table;
 mod stated;
 mod strd;
+mod table;
 mod tables;
 mod truth;
