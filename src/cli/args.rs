@@ -81,6 +81,10 @@ pub(super) enum Command {
     Predict(PredictArgs),
     /// Judge a file of readings
     Judge(JudgeArgs),
+    /// Calibrate the meter from parts of known value
+    Calibrate(CalibrateArgs),
+    /// Say where each switch of the meter can be trusted
+    Coverage(CoverageArgs),
     /// Look for mistakes in profiles, trays and logs
     Check(CheckArgs),
     /// The bench as plain lines, for screen readers and scripts
@@ -137,6 +141,29 @@ pub(super) struct JudgeArgs {
     /// Readings with a header line: `marking`, `switch` and `dial`, or `dark_from` and `dark_to`, or `lamp`; - reads standard input
     #[arg(value_name = "FILE.csv")]
     pub(super) file: PathBuf,
+}
+
+#[derive(Args, Debug)]
+pub(super) struct CalibrateArgs {
+    /// Where the calibrated profile goes; without it only the report is written
+    #[arg(long, value_name = "FILE.toml")]
+    pub(super) out: Option<PathBuf>,
+    /// Write JSON
+    #[arg(long)]
+    pub(super) json: bool,
+    /// Readings of known parts: `capacitance`, `uncertainty` (standard), `loss`, `switch`, `dial` or `dark_from` and `dark_to`, `label`
+    #[arg(value_name = "REFS.csv")]
+    pub(super) references: PathBuf,
+}
+
+#[derive(Args, Debug)]
+pub(super) struct CoverageArgs {
+    /// How good a value must be to count as useful: "3 %" [default: 5 %]
+    #[arg(long, value_name = "LIMIT")]
+    pub(super) limit: Option<String>,
+    /// Write JSON
+    #[arg(long)]
+    pub(super) json: bool,
 }
 
 #[derive(Args, Debug)]

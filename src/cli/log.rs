@@ -7,6 +7,7 @@ use std::path::Path;
 use chrono::{DateTime, FixedOffset, Local, SecondsFormat, SubsecRound};
 
 use super::Streams;
+use super::aligned::write_aligned;
 use super::args::{ExportFormat, LogArgs, LogCommand, Places};
 use super::columns::INPUTS;
 use super::failure::{Failure, FailureKind, Finish};
@@ -287,20 +288,7 @@ fn write_table(stdout: &mut dyn Write, entries: &[&Entry]) -> std::io::Result<()
             line(record.outcome.compartment.as_deref().unwrap_or("-")).into_owned(),
         ]
     }));
-    let mut widths = [0; HEADINGS.len()];
-    for row in &rows {
-        for (width, text) in widths.iter_mut().zip(row) {
-            *width = (*width).max(text.chars().count());
-        }
-    }
     let mut out = BufWriter::new(stdout);
-    for row in &rows {
-        let mut text = String::new();
-        for (width, cell) in widths.iter().zip(row) {
-            text.push_str(cell);
-            text.extend(std::iter::repeat_n(' ', width + 2 - cell.chars().count()));
-        }
-        writeln!(out, "{}", text.trim_end())?;
-    }
+    write_aligned(&mut out, &rows)?;
     out.flush()
 }

@@ -3,8 +3,8 @@
 //! ```text
 //! args      the command line            setup    profile, tray and log: which, where, read and checked
 //! bench     what the bench and `line` start with
-//! decode, predict, judge, check, log    one file a command
-//! columns, row                          a CSV of readings: its header, its rows
+//! decode, predict, judge, calibrate, coverage, check, log    one file a command
+//! columns, row, references              a CSV of readings: its header, its rows
 //! sheet, shapes, number, harmless       what is written: CSV and JSON tables, JSON objects, numbers, text of others
 //! failure                               why a command could not do its work, and the exit code
 //! ```
@@ -12,10 +12,13 @@
 //! Exit codes: 0 done, 1 something in the input was wrong, 2 the command line was wrong, 3 a file or the terminal failed,
 //! 4 a defect in the program.
 
+mod aligned;
 mod args;
 mod bench;
+mod calibrate;
 mod check;
 mod columns;
+mod coverage;
 mod decode;
 mod failure;
 mod harmless;
@@ -25,9 +28,11 @@ mod log;
 mod number;
 mod output;
 mod predict;
+mod references;
 mod row;
 mod setup;
 mod shapes;
+mod shapes_meter;
 mod sheet;
 
 use std::ffi::OsString;
@@ -110,6 +115,8 @@ fn obey(line: CommandLine, streams: &mut Streams<'_>) -> Result<Finish, Failure>
         Some(Command::Decode(args)) => decode::run(&args, streams),
         Some(Command::Predict(args)) => predict::run(&args, places, streams),
         Some(Command::Judge(args)) => judge::run(&args, places, streams),
+        Some(Command::Calibrate(args)) => calibrate::run(&args, places, streams),
+        Some(Command::Coverage(args)) => coverage::run(&args, places, streams),
         Some(Command::Check(args)) => check::run(&args, streams),
         Some(Command::Log(args)) => log::run(&args, places, streams),
         Some(Command::Completions { shell }) => {

@@ -123,7 +123,13 @@ fn text(cell: &[u8]) -> Cow<'_, str> {
     }
 }
 
-fn seen(meter: &Meter, dial: &str, edges: [&str; 2], lamp: &str) -> Result<Seen, String> {
+/// Reads what was seen from its cells.
+pub(super) fn seen(
+    meter: &Meter,
+    dial: &str,
+    edges: [&str; 2],
+    lamp: &str,
+) -> Result<Seen, String> {
     let lamp = lamp_cell(lamp)?;
     let [from, to] = edges;
     let from = edge_cell(meter, "dark_from", from)?;

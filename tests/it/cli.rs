@@ -8,6 +8,7 @@
 mod decode;
 mod judge;
 mod log;
+mod meter;
 
 use std::fs;
 use std::io::Write;
