@@ -8,7 +8,7 @@ use super::failure::Failure;
 use super::harmless::line;
 use super::predict::switch_named;
 use super::row::seen;
-use crate::meter::{Meter, ReferenceReading};
+use crate::meter::{Meter, ReferenceReading, check_reading};
 use crate::quantity::{Farad, Fraction, parse};
 
 const COLUMNS: [&str; 8] = [
@@ -124,14 +124,16 @@ fn reading(
         [cell("dark_from"), cell("dark_to")],
         "",
     )?;
-    Ok(ReferenceReading {
+    let reading = ReferenceReading {
         label: cell("label").to_owned(),
         capacitance,
         standard_uncertainty: uncertainty(cell("uncertainty"), capacitance)?,
         loss: loss(cell("loss"))?,
         switch,
         seen,
-    })
+    };
+    check_reading(meter, &reading).map_err(|kind| kind.to_string())?;
+    Ok(reading)
 }
 
 /// A quantity or a percentage; open terminals need none.

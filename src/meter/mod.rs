@@ -27,7 +27,7 @@ mod seen;
 pub use calibrate::{
     Calibrated, CalibrationReport, Contradiction, NextPart, NotCalibrated, Parameter, PartCheck,
     ReferenceReading, Residual, Robust, RobustChange, RowFault, RowFaultKind, SwitchGain,
-    calibrate, calibrate_quickly,
+    calibrate, calibrate_quickly, check_reading,
 };
 pub use coverage::{Coverage, Covered, SwitchCoverage, coverage};
 pub use estimate::measure;

@@ -24,7 +24,7 @@ use problem::Calibrating;
 use rows::Rows;
 use unknowns::Unknowns;
 
-pub use rows::{RowFault, RowFaultKind};
+pub use rows::{RowFault, RowFaultKind, check_reading};
 
 /// A part of known value, or the open terminals, read on a switch.
 #[derive(Clone, Debug, PartialEq)]

@@ -99,7 +99,7 @@ impl Rows {
         let mut faults = Vec::new();
         for (row, reading) in readings.iter().enumerate() {
             let mut complain = |kind| faults.push(RowFault { row, kind });
-            if let Err(kind) = check(meter, reading) {
+            if let Err(kind) = check_reading(meter, reading) {
                 complain(kind);
                 continue;
             }
@@ -168,7 +168,11 @@ impl Rows {
     }
 }
 
-fn check(meter: &Meter, reading: &ReferenceReading) -> Result<(), RowFaultKind> {
+/// Returns what is wrong with a row taken alone.
+///
+/// # Errors
+/// The mistake: a value, uncertainty or loss out of range, a switch the meter lacks.
+pub fn check_reading(meter: &Meter, reading: &ReferenceReading) -> Result<(), RowFaultKind> {
     let (c, u) = (
         reading.capacitance.get(),
         reading.standard_uncertainty.get(),

@@ -62,7 +62,8 @@ fn calibrate_reports_and_writes_a_profile_that_reads_back() {
         next, read a part of 3.3 nF known to 0.5 % on switch D: 0.65 %, 0.60 %, 0.68 %, 0.56 % then
         ! written to DIR/calibrated.toml
         exit 0
-    "#]].assert_eq(&said);
+    "#]]
+    .assert_eq(&said);
     let before = fs::read_to_string(example_meter()).expect("the example");
     let after = fs::read_to_string(&out).expect("written");
     let head = before.split("[calibration]").next().expect("the profile");
@@ -100,10 +101,14 @@ fn references_with_mistakes_are_told_line_by_line() {
     fs::write(&file, rows).expect("a file");
     let said = folder.run(&["calibrate", "--meter", &example_meter(), &file], b"");
     expect![[r#"
+        ! DIR/refs.csv:3: a reference part has a capacitance above 0, or 0 F for open terminals
+        ! DIR/refs.csv:4: the standard uncertainty of a reference part lies above 0 and below its capacitance
+        ! DIR/refs.csv:5: a loss (tan δ) lies from 0 to 1
         ! DIR/refs.csv:6: Example meter has no switch `E`; known: A, B, C, D
         ! DIR/refs.csv:7: dial is `134`: the dial goes from 0 to 100
         exit 1
-    "#]].assert_eq(&said);
+    "#]]
+    .assert_eq(&said);
     fs::write(&file, "capacitance,switch,dail\n10 nF,C,34\n").expect("a file");
     let said = folder.run(&["calibrate", "--meter", &example_meter(), &file], b"");
     expect![[r#"
