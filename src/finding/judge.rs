@@ -87,6 +87,16 @@ impl Said {
         }
     }
 
+    /// No value and so no word; why, unless the lamp has a remark of its own.
+    fn without_value(why: Option<String>) -> Self {
+        Self {
+            word: Word::Undecided,
+            why,
+            slip: None,
+            doubt: Doubt::Elsewhere,
+        }
+    }
+
     /// No word, and why.
     fn withheld(why: String) -> Self {
         Self {
@@ -116,6 +126,7 @@ impl Case<'_> {
         let said = self.say(&ranked, index, &part, loss);
         let word = said.word;
         let mut remarks: Vec<String> = said.why.into_iter().collect();
+        remarks.extend(remark::lamp(self.observation, &part));
         remarks.extend(remark::about_limits(
             reading,
             &weighed.limits,
@@ -185,7 +196,7 @@ impl Case<'_> {
                 self.withheld(word, ranked, index, part)
                     .unwrap_or_else(|| Said::plainly(word))
             }
-            None => Said::withheld(remark::no_value(
+            None => Said::without_value(remark::no_value(
                 self.observation,
                 loss == LossVerdict::TooLossy,
             )),
@@ -332,7 +343,7 @@ impl Case<'_> {
     }
 }
 
-fn word_of(probability: f64, rules: &HouseRules) -> Word {
+pub(super) fn word_of(probability: f64, rules: &HouseRules) -> Word {
     if probability >= rules.confidence {
         Word::Inside
     } else if probability <= 1.0 - rules.confidence {

@@ -1,9 +1,9 @@
 //! The sentences beside a word: why, and how sure. Each is computed; none is said of what was not looked at.
 
 use super::loss::LossVerdict;
-use super::{Circumstances, Limits, LimitsFrom, Observation, Tested, Word};
+use super::{Circumstances, Limits, LimitsFrom, Observation, Tested, Word, lamp, lamp_says};
 use crate::marking::Reading;
-use crate::meter::{Estimate, Lamp, Measured, Seen, Source};
+use crate::meter::{Estimate, Lamp, Measured, Part, Seen, Source};
 use crate::quantity::{Farad, Fraction, Resolution, Uncertain, engineering, harmless};
 
 /// Measured value from nominal.
@@ -11,21 +11,27 @@ pub(super) fn deviation(estimate: Estimate, reading: &Reading) -> Fraction {
     Fraction::new(estimate.capacitance / reading.capacitance - 1.0)
 }
 
-/// Why there is no value.
-pub(super) fn no_value(observation: &Observation<'_>, is_too_lossy: bool) -> String {
+/// Why there is no value; a lamp that misbehaved has a remark of its own.
+pub(super) fn no_value(observation: &Observation<'_>, is_too_lossy: bool) -> Option<String> {
     if is_too_lossy {
         let frequency = observation.meter.frequency;
-        return format!("too lossy at {frequency}: the reading is no value");
+        return Some(format!("too lossy at {frequency}: the reading is no value"));
     }
     match observation.seen {
-        Seen::NeverDark { .. } => {
-            "never dark: find the dimmest place, then try the next switch".to_owned()
-        }
-        Seen::AlwaysDark | Seen::Edges { .. } => {
-            "lamp, oscillator or wiring: check that the lamp lights with open terminals".to_owned()
-        }
-        _ => "the reading gives no value".to_owned(),
+        Seen::NeverDark { .. } | Seen::AlwaysDark | Seen::Edges { .. } => None,
+        _ => Some("the reading gives no value".to_owned()),
     }
+}
+
+/// What a lamp that misbehaved means, and what to do about it.
+pub(super) fn lamp(observation: &Observation<'_>, part: &Part) -> Option<String> {
+    let what = match observation.seen {
+        Seen::NeverDark { .. } => "never dark: ",
+        Seen::AlwaysDark => "dark everywhere: ",
+        _ => "",
+    };
+    let meaning = lamp::in_words(&lamp_says(observation, Some(part)))?;
+    Some(format!("{what}{meaning}"))
 }
 
 /// The limit exceeded, and the rule that spoke.

@@ -14,6 +14,7 @@ pub mod fit;
 mod forecast;
 mod improve;
 mod model;
+mod parking;
 mod part;
 mod plain;
 mod predict;
@@ -33,6 +34,7 @@ pub use coverage::{Coverage, Covered, SwitchCoverage, coverage};
 pub use estimate::measure;
 pub use forecast::NumberRead;
 pub use improve::{Change, Improvement};
+pub use parking::{ParkedWindow, parked_window, parking_places};
 pub use predict::{Null, best_switch, null, predict};
 
 pub use part::{

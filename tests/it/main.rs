@@ -7,6 +7,7 @@ mod coverage;
 mod example;
 mod judge;
 mod killed;
+mod lamp;
 mod layers;
 mod logs;
 mod markings;
