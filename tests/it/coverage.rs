@@ -49,7 +49,7 @@ fn the_span_is_that_of_the_textbook_law() {
 #[test]
 fn a_load_holds_the_lamp_lit_on_part_of_the_dial() {
     let mut components = Components::linear();
-    components.drive = "drive = \"divider\"\nresistance = \"100 kΩ\"";
+    components.drive = "drive = \"divider\"\nresistance = \"100 kΩ\"".to_owned();
     components.threshold = 0.008;
     let found = coverage(&components.meter(), Fraction::new(0.05));
     let second = &found.switches[1];
@@ -63,7 +63,7 @@ fn a_load_holds_the_lamp_lit_on_part_of_the_dial() {
             .filter(|v| from < v.balance && v.balance < to)
     };
     assert!(lit().count() > 5 && lit().all(|v| v.both_edges.is_none()));
-    components.drive = "drive = \"buffered\"";
+    components.drive = "drive = \"buffered\"".to_owned();
     let plain = coverage(&components.meter(), Fraction::new(0.05));
     assert!(plain.switches.iter().all(|s| s.never_dark.is_none()));
 }

@@ -107,7 +107,7 @@ fn dimmest_inside_is_loss_or_load() {
     );
     assert_eq!(found[1].cause, Cause::Distortion);
     let mut components = Components::linear();
-    components.drive = "drive = \"divider\"\nresistance = \"100 kΩ\"";
+    components.drive = "drive = \"divider\"\nresistance = \"100 kΩ\"".to_owned();
     components.threshold = 0.008;
     let found = says(&components.meter(), "B", never(17.0), "223");
     assert!(

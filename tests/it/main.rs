@@ -16,6 +16,7 @@ mod profiles;
 mod properties;
 mod pty;
 mod screens;
+mod spice;
 mod stated;
 mod strd;
 mod table;

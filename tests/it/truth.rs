@@ -43,7 +43,7 @@ impl Random {
 /// The components of a meter, and how far each may be off.
 #[derive(Clone, Debug)]
 pub(crate) struct Components {
-    pub(crate) drive: &'static str,
+    pub(crate) drive: String,
     pub(crate) resistors: Vec<f64>,
     pub(crate) resistor_tolerance: f64,
     pub(crate) reference: f64,
@@ -72,7 +72,7 @@ pub(crate) enum Wiper {
 impl Components {
     pub(crate) fn linear() -> Self {
         Self {
-            drive: "drive = \"divider\"\nresistance = \"330 kΩ\"",
+            drive: "drive = \"divider\"\nresistance = \"330 kΩ\"".to_owned(),
             resistors: vec![430.0, 5.1e3, 62e3, 750e3],
             resistor_tolerance: 0.02,
             reference: 82e-9,
@@ -100,7 +100,7 @@ impl Components {
             (100.0, 4716.0),
         ];
         Self {
-            drive: "drive = \"inverting\"\nresistance = \"470 kΩ\"",
+            drive: "drive = \"inverting\"\nresistance = \"470 kΩ\"".to_owned(),
             resistors: vec![300.0, 1.8e3, 11e3, 68e3],
             reference: 68e-9,
             dial: Wiper::Points {
