@@ -126,7 +126,9 @@ impl Case<'_> {
         let said = self.say(&ranked, index, &part, loss);
         let word = said.word;
         let mut remarks: Vec<String> = said.why.into_iter().collect();
-        remarks.extend(remark::lamp(self.observation, &part));
+        if word != Word::Dead {
+            remarks.extend(remark::lamp(self.observation, &part));
+        }
         remarks.extend(remark::about_limits(
             reading,
             &weighed.limits,
