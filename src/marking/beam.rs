@@ -7,7 +7,7 @@
 
 use super::lexicon::Lexicon;
 use super::path::{NONE, Path, START};
-use super::piece::{Meaning, Piece, Pieces, Voltage};
+use super::piece::{Amount, Meaning, Piece, Pieces, Standing, Voltage};
 use super::rules_for;
 use super::scan::{MOST_CELLS, Scan, Sort};
 use crate::tables::{Factors, Family, TABLES};
@@ -30,7 +30,7 @@ pub(super) struct Beam<'a, 't> {
     /// The words.
     pub(super) lexicon: &'a Lexicon,
     /// The pieces proposed.
-    pub(super) pieces: Vec<Piece>,
+    pub(super) pieces: Pieces,
     /// The paths that reach the end.
     pub(super) finished: Vec<Path>,
     steps: Vec<Step>,
@@ -51,7 +51,8 @@ pub(super) fn search<'a, 't>(
         steps: Vec::with_capacity(64),
     };
     let mut pieces = Pieces {
-        list: Vec::with_capacity(48),
+        list: Vec::with_capacity(64),
+        sections: Vec::new(),
     };
     search.add(scan.after_blanks(0), Path::first(lexicon, given));
     let mut live: Vec<u32> = Vec::with_capacity(WIDTH);
@@ -72,6 +73,9 @@ pub(super) fn search<'a, 't>(
             .iter()
             .enumerate()
         {
+            if piece.place == Standing::Inner {
+                continue;
+            }
             let number = u16::try_from(first + offset).unwrap_or(NONE);
             for &path in &live {
                 search.extend(path, number, piece, &pieces.list);
@@ -86,7 +90,7 @@ pub(super) fn search<'a, 't>(
     Beam {
         scan,
         lexicon,
-        pieces: pieces.list,
+        pieces,
         finished,
         steps: search.steps,
     }
@@ -98,7 +102,13 @@ impl Beam<'_, '_> {
         let mut found = Vec::with_capacity(8);
         let mut step = path.step;
         while let Some(here) = self.steps.get(index(step)) {
-            found.extend(self.piece(here.piece));
+            if let Some(piece) = self.piece(here.piece) {
+                if let Meaning::Group(first, n) = piece.meaning {
+                    let inner = (first..first + u16::from(n)).rev();
+                    found.extend(inner.filter_map(|place| self.piece(place)));
+                }
+                found.push(piece);
+            }
             step = here.before;
         }
         found.reverse();
@@ -107,7 +117,28 @@ impl Beam<'_, '_> {
 
     /// Returns a piece by its place, `None` for [`NONE`].
     pub(super) fn piece(&self, place: u16) -> Option<&Piece> {
-        self.pieces.get(usize::from(place))
+        self.pieces.list.get(usize::from(place))
+    }
+
+    /// Returns the capacitance by its place; of several sections that of the first.
+    pub(super) fn value(&self, place: u16) -> Option<Amount> {
+        match self.piece(place)?.meaning {
+            Meaning::Value(amount) => Some(amount),
+            Meaning::Sections(_) => self.sections(place)?.first().copied(),
+            _ => None,
+        }
+    }
+
+    /// Returns the sections by the place of their piece.
+    pub(super) fn sections(&self, place: u16) -> Option<&[Amount]> {
+        match self.piece(place)?.meaning {
+            Meaning::Sections(row) => self
+                .pieces
+                .sections
+                .get(usize::from(row))
+                .map(Vec::as_slice),
+            _ => None,
+        }
     }
 
     /// Returns a voltage by its place.
@@ -191,7 +222,7 @@ impl Search<'_, '_> {
             return;
         };
         // A second value is the usual case at a number behind the first, so it is refused before anything is copied.
-        if let Meaning::Value(_) = piece.meaning
+        if let Meaning::Value(_) | Meaning::Sections(_) = piece.meaning
             && let Some(taken) = pieces.get(usize::from(from.slots.value))
             && taken.meaning != piece.meaning
         {

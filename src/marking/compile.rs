@@ -4,9 +4,10 @@ use super::lexicon::{
     ByFirst, ByKind, Letter, Lexicon, NO_VIEW, Named, NamedEvidence, Reason, Unit, View, Volts,
     number, view_of,
 };
-use super::piece::Class;
+use super::piece::{Class, WHOLE_UNIT};
+use super::{compile_codes, compile_colours};
 use crate::tables::{
-    ClimatePlace, Family, FamilyWord, KINDS, Place, Ranking, Series, Share, TABLES, VoltageKind,
+    ClimatePlace, Family, KINDS, Place, Ranking, Series, Share, Stands, TABLES, VoltageKind,
     family_facts,
 };
 
@@ -24,7 +25,10 @@ pub(super) fn lexicon() -> Lexicon {
     let views = views(ranking);
     let (letter_index, letters) = letters(&mut reasons);
     let voltage_letters = voltage_letters(&mut reasons, named.voltage_letter);
-    let (word_index, words) = words(&mut reasons, named.family, ranking, &views);
+    let mut words = Words::default();
+    family_words(&mut words, &mut reasons, named.family, ranking, &views);
+    let codes = compile_codes::codes(&mut words, &mut reasons, &named, &views);
+    let colours = compile_colours::colours(&mut words, &mut reasons, &views);
     let limit_words = TABLES.tolerance_words();
     let classes = TABLES.safety_words();
     Lexicon {
@@ -42,8 +46,10 @@ pub(super) fn lexicon() -> Lexicon {
         voltage_letters,
         voltage_words: voltage_words(&named),
         voltage_points: voltage_points(&named),
-        word_index,
-        words,
+        word_index: ByFirst::new(words.index),
+        words: words.list,
+        codes,
+        colours,
         classes: ByFirst::new(
             classes.filter_map(|row| Some((row.word.clone(), class(&row.word)?))),
         ),
@@ -57,7 +63,25 @@ pub(super) fn lexicon() -> Lexicon {
     }
 }
 
-struct Reasons(Vec<Reason>);
+/// The evidence and its reasons, growing while the tables are read.
+pub(super) struct Reasons(Vec<Reason>);
+
+/// The words that name something, growing while the tables are read.
+#[derive(Default)]
+pub(super) struct Words {
+    /// Words to be found by their first glyph.
+    pub(super) index: Vec<(String, u16)>,
+    /// What they mean.
+    pub(super) list: Vec<Named>,
+}
+
+impl Words {
+    /// Adds a meaning; returns its row.
+    pub(super) fn add(&mut self, named: Named) -> u16 {
+        self.list.push(named);
+        number(self.list.len() - 1)
+    }
+}
 
 impl Reasons {
     fn of(ranking: &Ranking) -> Self {
@@ -69,13 +93,14 @@ impl Reasons {
         Self(rows.map(reason).collect())
     }
 
-    fn add(&mut self, on: ByKind, why: String) -> u16 {
+    /// Adds evidence with its reason.
+    pub(super) fn add(&mut self, on: ByKind, why: String) -> u16 {
         self.0.push(Reason { on, why });
         number(self.0.len() - 1)
     }
 
     /// Returns the figures of a row.
-    fn figures(&self, evidence: u16) -> ByKind {
+    pub(super) fn figures(&self, evidence: u16) -> ByKind {
         self.0
             .get(usize::from(evidence))
             .map_or([1.0; KINDS], |reason| reason.on)
@@ -83,7 +108,7 @@ impl Reasons {
 }
 
 /// Returns what a row says, without the mark that it starts with: the mark is shown anyway.
-fn said(what: &str, row: &impl std::fmt::Display) -> String {
+pub(super) fn said(what: &str, row: &impl std::fmt::Display) -> String {
     let row = row.to_string();
     let meaning = row
         .split_once(": ")
@@ -99,6 +124,7 @@ fn units(ranking: &Ranking, neutral: u16) -> ByFirst<Unit> {
     ByFirst::new(TABLES.unit_words().map(|row| {
         let unit = Unit {
             exponent: row.exponent,
+            scale: row.scale.unwrap_or(WHOLE_UNIT),
             evidence: evidence(ranking, &row.notation, neutral),
             share: row.share,
             place: Place::Any,
@@ -111,6 +137,7 @@ fn points(ranking: &Ranking, neutral: u16) -> ByFirst<Unit> {
     ByFirst::new(TABLES.point_letters().map(|row| {
         let unit = Unit {
             exponent: row.exponent,
+            scale: WHOLE_UNIT,
             evidence: evidence(ranking, &row.notation, neutral),
             share: row.share,
             place: row.place,
@@ -194,43 +221,44 @@ fn voltage_points(named: &NamedEvidence) -> ByFirst<Volts> {
     }))
 }
 
-fn words(
+fn family_words(
+    words: &mut Words,
     reasons: &mut Reasons,
     base: u16,
     ranking: &Ranking,
     views: &[[View; KINDS]],
-) -> (ByFirst<u16>, Vec<Named>) {
-    let mut words = Vec::new();
-    let mut index = Vec::new();
+) {
     for row in TABLES.family_words() {
         let evidence = reasons.add(reasons.figures(base), said("word for", row));
-        index.push((row.word.clone(), number(words.len())));
-        words.push(name(row, evidence, ranking, views));
+        let kinds = kinds_of(row.family, &row.kinds, ranking, views);
+        let place = words.add(Named {
+            family: row.family,
+            characteristic: None,
+            stands: Stands::Anywhere,
+            kinds,
+            evidence,
+        });
+        words.index.push((row.word.clone(), place));
     }
-    (ByFirst::new(index), words)
 }
 
-fn name(
-    row: &'static FamilyWord,
-    evidence: u16,
+/// Returns which kinds of part a family, narrowed to the kinds named, can be: 1 or 0.
+pub(super) fn kinds_of(
+    family: Family,
+    named: &[String],
     ranking: &Ranking,
     views: &[[View; KINDS]],
-) -> Named {
-    let of_family = views.get(usize::from(view_of(Some(row.family))));
+) -> ByKind {
+    let of_family = views.get(usize::from(view_of(Some(family))));
     let mut kinds: ByKind = of_family.map_or([0.0; KINDS], |views| {
         views.map(|view| if view.prior > 0.0 { 1.0 } else { 0.0 })
     });
     for (kind, fits) in ranking.kinds.iter().zip(&mut kinds) {
-        if !row.kinds.is_empty() && !row.kinds.contains(&kind.name) {
+        if !named.is_empty() && !named.contains(&kind.name) {
             *fits = 0.0;
         }
     }
-    Named {
-        family: row.family,
-        characteristic: row.characteristic.as_deref(),
-        kinds,
-        evidence,
-    }
+    kinds
 }
 
 fn views(ranking: &Ranking) -> Vec<[View; KINDS]> {

@@ -1,9 +1,11 @@
 //! The tables as the rules want them: words as glyphs, found by their first glyph; evidence by number.
 
+use super::compile_codes::Codes;
+use super::compile_colours::Colours;
 use super::piece::Class;
 use super::scan::{Scan, Sort, glyph, sort};
 use crate::quantity::Tolerance;
-use crate::tables::{Family, KINDS, Multiplier, Place, Ranking, Series, VoltageKind};
+use crate::tables::{Family, KINDS, Multiplier, Place, Ranking, Series, Stands, VoltageKind};
 use std::sync::LazyLock;
 
 /// One figure for each kind of part.
@@ -32,6 +34,8 @@ pub(super) struct Unit {
     pub(super) exponent: i8,
     /// The evidence.
     pub(super) evidence: u16,
+    /// The unit in hundred-thousandths of that power of ten.
+    pub(super) scale: u32,
     /// How often it means this.
     pub(super) share: f64,
     /// Where a letter may stand.
@@ -65,7 +69,9 @@ pub(super) struct Named {
     /// The family.
     pub(super) family: Family,
     /// The characteristic.
-    pub(super) characteristic: Option<&'static str>,
+    pub(super) characteristic: Option<String>,
+    /// Where the word may stand.
+    pub(super) stands: Stands,
     /// The kinds that the part can be: 1 or 0, or between where only some families of a kind fit.
     pub(super) kinds: ByKind,
     /// The evidence.
@@ -115,6 +121,7 @@ named_evidence!(
     worn_point
     voltage_code voltage_word voltage_ac voltage_bare voltage_group voltage_letter
     safety family no_voltage no_tolerance
+    characteristic chip_code british sections military date
 );
 
 /// The tables, ready for the rules.
@@ -151,6 +158,10 @@ pub(super) struct Lexicon {
     pub(super) word_index: ByFirst<u16>,
     /// Family words.
     pub(super) words: Vec<Named>,
+    /// Codes, dates and text.
+    pub(super) codes: Codes,
+    /// Colours of bands and dots.
+    pub(super) colours: Colours,
     /// Classes of interference suppression.
     pub(super) classes: ByFirst<Class>,
     /// Figures of the climatic category: lowest, highest, days.

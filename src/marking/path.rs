@@ -40,6 +40,8 @@ pub(super) struct Slots {
     pub(super) voltages: [u16; 2],
     /// The characteristic.
     pub(super) characteristic: u16,
+    /// The date.
+    pub(super) date: u16,
     /// The digit of the X class, 0 for none.
     pub(super) x: u8,
     /// The digit of the Y class, 0 for none.
@@ -71,6 +73,7 @@ impl Path {
                 tolerance: NONE,
                 voltages: [NONE; 2],
                 characteristic: NONE,
+                date: NONE,
                 x: 0,
                 y: 0,
                 family: given,
@@ -91,11 +94,28 @@ impl Path {
     ) -> bool {
         let meaning_of = |place: u16| pieces.get(usize::from(place)).map(|piece| piece.meaning);
         match piece.meaning {
-            Meaning::Value(_) => {
+            Meaning::Value(_) | Meaning::Sections(_) => {
                 if self.slots.value == NONE {
                     self.slots.value = place;
-                } else {
+                } else if meaning_of(self.slots.value) == Some(piece.meaning) {
                     self.weight *= factors.repeated;
+                } else {
+                    return false;
+                }
+            }
+            Meaning::Date(date) => match meaning_of(self.slots.date) {
+                None => self.slots.date = place,
+                Some(Meaning::Date(other)) if other == date => self.weight *= factors.repeated,
+                Some(_) => return self.contradict(place, factors),
+            },
+            Meaning::Group(first, n) => {
+                for place in first..first + u16::from(n) {
+                    let Some(inner) = pieces.get(usize::from(place)) else {
+                        return false;
+                    };
+                    if !self.take(place, inner, pieces, lexicon, factors) {
+                        return false;
+                    }
                 }
             }
             Meaning::Limits(_) | Meaning::Letter(_) => {
@@ -123,7 +143,7 @@ impl Path {
             Meaning::Word(row) => return self.take_word(place, row, lexicon, factors),
             Meaning::Safety(class) => return self.take_class(place, class, factors),
             Meaning::Unexplained => self.unexplained |= piece.mask(),
-            Meaning::Text | Meaning::Separator => {}
+            Meaning::Text | Meaning::Part(_) | Meaning::Separator => {}
         }
         true
     }

@@ -1,5 +1,6 @@
 //! What a rule proposes: a piece of the text with a meaning.
 
+use super::Role;
 use super::scan::{Figures, Scan};
 use crate::quantity::{Farad, Tolerance};
 use crate::tables::VoltageKind;
@@ -17,6 +18,17 @@ pub(super) struct Piece {
     pub(super) weight: f64,
     /// The meaning.
     pub(super) meaning: Meaning,
+    /// Whether the piece stands for itself.
+    pub(super) place: Standing,
+}
+
+/// Whether a piece stands for itself or is a part of a group.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(super) enum Standing {
+    /// For itself.
+    Alone,
+    /// As a part of a group only.
+    Inner,
 }
 
 /// The meaning of a piece.
@@ -24,6 +36,8 @@ pub(super) struct Piece {
 pub(super) enum Meaning {
     /// The capacitance.
     Value(Amount),
+    /// The capacitances of several sections: a row of [`Pieces::sections`].
+    Sections(u16),
     /// A tolerance in figures or as a word.
     Limits(Tolerance),
     /// A tolerance letter: a row of the lexicon.
@@ -34,8 +48,14 @@ pub(super) enum Meaning {
     Word(u16),
     /// A class of interference suppression.
     Safety(Class),
+    /// A date of make.
+    Date(Date),
     /// Text that says nothing of the part's values.
     Text,
+    /// A further band or dot of what another piece says.
+    Part(Role),
+    /// Pieces that only stand together: the first of them and how many.
+    Group(u16, u8),
     /// A sign between others.
     Separator,
     /// Nothing that is known.
@@ -62,6 +82,21 @@ pub(super) enum Form {
     Bare,
 }
 
+/// A date of make; 0 is not stated.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(super) struct Date {
+    /// The year, or the first of those in question.
+    pub(super) year: u16,
+    /// After how many years the mark comes again; 0 for never.
+    pub(super) cycle: u16,
+    /// The month.
+    pub(super) month: u8,
+    /// The week.
+    pub(super) week: u8,
+    /// The day.
+    pub(super) day: u8,
+}
+
 /// A class of interference suppression: the duty and the digit.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub(super) enum Class {
@@ -76,7 +111,15 @@ pub(super) enum Class {
 pub(super) struct Amount {
     digits: u32,
     exponent: i8,
+    /// The unit in hundred-thousandths, for units that are no power of ten of the farad.
+    unit: u32,
 }
+
+/// Farads below which a tolerance letter says a capacitance (IEC 60062).
+const SMALL_FARADS: f64 = 10e-12;
+
+/// A unit that is a power of ten of the farad.
+pub(super) const WHOLE_UNIT: u32 = 100_000;
 
 impl Amount {
     /// Makes a capacitance of digits times a power of ten in farad; `None` for zero.
@@ -89,7 +132,11 @@ impl Amount {
             digits /= 10;
             exponent = exponent.saturating_add(1);
         }
-        Some(Self { digits, exponent })
+        Some(Self {
+            digits,
+            exponent,
+            unit: WHOLE_UNIT,
+        })
     }
 
     /// Makes a capacitance of figures in a unit that is a power of ten of the farad.
@@ -98,15 +145,28 @@ impl Amount {
         Self::new(figures.digits, unit.saturating_sub(n_decimals))
     }
 
+    /// Returns the same figures in a unit of so many hundred-thousandths.
+    pub(super) fn in_units(self, unit: u32) -> Self {
+        Self { unit, ..self }
+    }
+
     /// Returns the capacitance, the nearest double to the decimal number.
     pub(super) fn farads(self) -> Farad {
-        let digits = f64::from(self.digits);
+        let mut digits = f64::from(self.digits);
+        if self.unit != WHOLE_UNIT {
+            digits *= f64::from(self.unit) / f64::from(WHOLE_UNIT);
+        }
         let exponent = i32::from(self.exponent);
         Farad::new(if exponent < 0 {
             digits / 10f64.powi(-exponent)
         } else {
             digits * 10f64.powi(exponent)
         })
+    }
+
+    /// Returns whether a tolerance letter says a capacitance (IEC 60062).
+    pub(super) fn is_below_ten_picofarads(self) -> bool {
+        self.farads().get() < SMALL_FARADS
     }
 
     /// Returns the first three figures as a number from 100 to 999; `None` if there are more than three.
@@ -120,11 +180,16 @@ impl Amount {
 }
 
 /// The pieces proposed so far.
-#[derive(Default)]
+#[derive(Clone, Default)]
 pub(super) struct Pieces {
     /// All of them, those of one place side by side.
     pub(super) list: Vec<Piece>,
+    /// The sections of parts with several capacitors.
+    pub(super) sections: Vec<Vec<Amount>>,
 }
+
+/// A part of a group: its cells, its meaning, and the evidence that holds the reason shown.
+pub(super) type Inner = ((usize, usize), Meaning, u16);
 
 impl Pieces {
     /// Adds a piece; one that cannot be (weight 0) is left out.
@@ -143,8 +208,33 @@ impl Pieces {
                 evidence,
                 weight,
                 meaning,
+                place: Standing::Alone,
             });
         }
+    }
+
+    /// Adds pieces that only stand together; `evidence` and `weight` are those of the whole.
+    pub(super) fn group(&mut self, evidence: u16, weight: f64, parts: &[Inner]) {
+        let first = u16::try_from(self.list.len()).unwrap_or(u16::MAX);
+        let ends = parts.first().zip(parts.last());
+        let Some((&(start, ..), &(end, ..))) = ends.filter(|_| weight > 0.0) else {
+            return;
+        };
+        for &(cells, meaning, evidence) in parts {
+            self.push(cells, meaning, evidence, 1.0);
+            if let Some(piece) = self.list.last_mut() {
+                piece.place = Standing::Inner;
+            }
+        }
+        let n = u8::try_from(parts.len()).unwrap_or(u8::MAX);
+        self.push((start.0, end.1), Meaning::Group(first, n), evidence, weight);
+    }
+
+    /// Adds the capacitances of several sections.
+    pub(super) fn sections(&mut self, cells: (usize, usize), amounts: Vec<Amount>, evidence: u16) {
+        let row = u16::try_from(self.sections.len()).unwrap_or(u16::MAX);
+        self.sections.push(amounts);
+        self.push(cells, Meaning::Sections(row), evidence, 1.0);
     }
 
     /// Adds a value, unless it is zero.
@@ -158,6 +248,43 @@ impl Pieces {
         if let Some(amount) = amount {
             self.push(cells, Meaning::Value(amount), evidence, weight);
         }
+    }
+}
+
+impl Date {
+    /// Returns the date in words: "August 1977, 1997 or 2017".
+    pub(super) fn in_words(self) -> String {
+        const MONTHS: [&str; 13] = [
+            "",
+            "January ",
+            "February ",
+            "March ",
+            "April ",
+            "May ",
+            "June ",
+            "July ",
+            "August ",
+            "September ",
+            "October ",
+            "November ",
+            "December ",
+        ];
+        let month = MONTHS
+            .get(usize::from(self.month))
+            .copied()
+            .unwrap_or_default();
+        let day = match (self.day, self.week) {
+            (0, 0) => String::new(),
+            (0, week) => format!("week {week} of "),
+            (day, _) => format!("{day} "),
+        };
+        let (first, cycle) = (self.year, self.cycle);
+        let years = match cycle {
+            0 => first.to_string(),
+            10 => format!("a year ending in {}", first % 10),
+            _ => format!("{first}, {} or {}", first + cycle, first + 2 * cycle),
+        };
+        [day.as_str(), month, &years].concat()
     }
 }
 

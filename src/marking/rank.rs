@@ -3,40 +3,80 @@
 //! For each kind of part: its prior (or 1 for a family given), times how often such a part carries each of the marks, times
 //! how usual the value, the tolerance and the voltage are. The sum over the kinds is the mass of the reading. Paths that say
 //! nothing of the value have a mass too, and so has a code that is not known here: "none of these". Dividing by the sum of all makes plausibilities.
+//!
+//! A marking may be looked at in several ways (`variants`); their masses come together before they are divided.
 
 use super::beam::Beam;
-use super::piece::Meaning;
+use super::path::Path;
 use super::weigh::{Ranked, weigh};
 use crate::tables::{Factors, TABLES};
 
 /// How far two values must lie apart to be a trap.
 const TRAP: f64 = 999.0;
 
-/// Ranks the finished paths of a beam, most plausible first.
-pub(super) fn rank(beam: &Beam<'_, '_>) -> Vec<Ranked> {
-    let ranking = &TABLES.ranking;
-    let factors = &ranking.factors;
-    let mut found: Vec<Ranked> = Vec::with_capacity(beam.finished.len());
-    let unknown =
-        |n: usize| i32::try_from(n).map_or(0.0, |n| factors.unknown_code_character.powi(n));
-    let mut nothing = factors.unknown_code * unknown(beam.scan.n_visible());
-    for path in &beam.finished {
-        match beam.piece(path.slots.value).map(|piece| piece.meaning) {
-            Some(Meaning::Value(value)) => found.push(weigh(beam, path, value, ranking)),
-            _ => nothing += path.mass * factors.no_value,
+/// The readings found so far with their masses, and the mass of "none of these".
+#[derive(Default)]
+pub(super) struct Masses {
+    /// The readings.
+    pub(super) found: Vec<Ranked>,
+    /// The mass of "none of these".
+    pub(super) nothing: f64,
+    /// The best way of explaining the marking without a value, with its mass.
+    pub(super) without: Option<Path>,
+}
+
+impl Masses {
+    /// Adds the mass of a code that is not known here.
+    pub(super) fn add_unknown(&mut self, n_visible: usize) {
+        let factors = &TABLES.ranking.factors;
+        let power = i32::try_from(n_visible).unwrap_or(i32::MAX);
+        self.nothing += factors.unknown_code * factors.unknown_code_character.powi(power);
+    }
+
+    /// Adds the finished paths of a beam; `weight` is what the way of looking is worth.
+    pub(super) fn add(&mut self, beam: &Beam<'_, '_>, variant: u16, weight: f64) {
+        let ranking = &TABLES.ranking;
+        for path in &beam.finished {
+            if let Some(value) = beam.value(path.slots.value) {
+                let mut one = weigh(beam, path, value, ranking, variant);
+                one.plausibility *= weight;
+                self.found.push(one);
+            } else if variant == 0 {
+                self.nothing += path.mass * ranking.factors.no_value;
+                if self.without.is_none_or(|other| other.mass < path.mass) {
+                    self.without = Some(*path);
+                }
+            }
         }
     }
-    merge(&mut found);
-    found.sort_by(|a, b| b.plausibility.total_cmp(&a.plausibility));
-    drop_idle(&mut found);
-    let whole: f64 = nothing + found.iter().map(|one| one.plausibility).sum::<f64>();
-    if whole > 0.0 {
-        for one in &mut found {
-            one.plausibility /= whole;
-        }
+
+    /// Returns whether the marking makes little sense as it was read so far.
+    pub(super) fn is_doubtful(&self) -> bool {
+        let mass = |one: &Ranked| one.plausibility;
+        let best = self.found.iter().max_by(|a, b| mass(a).total_cmp(&mass(b)));
+        let whole = self.nothing + self.found.iter().map(mass).sum::<f64>();
+        best.is_none_or(|best| {
+            mass(best) < TABLES.ranking.factors.doubtful * whole || best.path.unexplained != 0
+        })
     }
-    mind_the_trap(&mut found, factors);
-    found
+
+    /// Makes plausibilities of the masses, most plausible first.
+    pub(super) fn rank(&mut self) {
+        let factors = &TABLES.ranking.factors;
+        merge(&mut self.found);
+        self.found
+            .sort_by(|a, b| b.plausibility.total_cmp(&a.plausibility));
+        drop_idle(&mut self.found);
+        let readings: f64 = self.found.iter().map(|one| one.plausibility).sum();
+        let whole = self.nothing + readings;
+        if whole > 0.0 {
+            self.nothing /= whole;
+            for one in &mut self.found {
+                one.plausibility /= whole;
+            }
+        }
+        mind_the_trap(&mut self.found, factors);
+    }
 }
 
 /// Puts readings of the same meaning together; the more probable way of getting there is kept.
@@ -61,8 +101,10 @@ fn same_meaning(one: &Ranked, other: &Ranked) -> bool {
     one.value == other.value
         && one.tolerance == other.tolerance
         && one.voltage == other.voltage
-        && a.family == b.family
-        && (a.x, a.y, a.characteristic) == (b.x, b.y, b.characteristic)
+        && (a.family, a.x, a.y) == (b.family, b.x, b.y)
+        && one.characteristic == other.characteristic
+        && one.date == other.date
+        && one.sections == other.sections
 }
 
 /// Drops readings that a more probable one of the same value explains better.

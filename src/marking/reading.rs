@@ -15,6 +15,19 @@ pub struct Decoding {
     pub unexplained: Vec<String>,
     /// How many further readings were left out.
     pub omitted: usize,
+    /// What the marking says if it says nothing of the value, where that is plausible at all.
+    pub without_value: Option<WithoutValue>,
+}
+
+/// What a marking says if it says nothing of the value: a date, a voltage, a family, other text.
+#[derive(Clone, Debug, PartialEq)]
+pub struct WithoutValue {
+    /// How probable it is that no reading is right, 0 to 1.
+    pub plausibility: f64,
+    /// What each piece of the marking was used for.
+    pub used: Vec<Used>,
+    /// The reasons.
+    pub why: Vec<String>,
 }
 
 /// One reading of a marking.

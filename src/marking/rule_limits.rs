@@ -5,6 +5,7 @@
 //!           | ("±" | "+-" | "+/-") figures ["%" | unit]     "±10"  "±0.25 pF"
 //!           | sign figures ["%"] ["/"] sign figures ["%"]   "+80-20"  "-20/+80 %"
 //!           | figures "/" figures "%"                       "10/50 %": the smaller is the minus side
+//!           | a pair of figures that is a row of `tolerance-words.toml`          "10/50"
 //! ```
 
 use super::lexicon::Lexicon;
@@ -23,10 +24,28 @@ pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mu
         b'+' if scan.at(at + 1) == b'-' => symmetric(scan, at + 2, lexicon),
         b'+' if scan.rest(at).starts_with(b"+/-") => symmetric(scan, at + 3, lexicon),
         b'+' | b'-' => two_sided(scan, at),
-        _ => percent(scan, at),
+        _ => {
+            words(scan, at, lexicon, pieces);
+            percent(scan, at)
+        }
     };
     if let Some((limits, end, weight)) = found {
         pieces.push((at, end), Meaning::Limits(limits), lexicon.limits, weight);
+    }
+}
+
+/// Proposes pairs of figures that are a tolerance by custom: "10/50".
+fn words(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mut Pieces) {
+    let touches = |cell: usize| matches!(scan.sort(cell), Sort::Digit | Sort::Letter);
+    if touches(at.wrapping_sub(1)) {
+        return;
+    }
+    for entry in lexicon.limit_words.longest(scan, at) {
+        let end = at + entry.glyphs.len();
+        if !touches(end) && scan.at(end) != b'%' {
+            let (limits, share) = entry.meaning;
+            pieces.push((at, end), Meaning::Limits(limits), lexicon.limits, share);
+        }
     }
 }
 

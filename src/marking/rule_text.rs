@@ -1,8 +1,11 @@
-//! Text that must not be taken for a value: temperatures and climatic categories.
+//! Text that must not be taken for a value: temperatures, climatic categories, approvals, lots and type numbers.
 //!
 //! ```text
 //! temperature = digits [blank] ("°" | "°C" | "C")            "105°C"  "85 C"
 //! climate     = lowest "/" highest "/" days ["/" letter]     "40/085/21"  (IEC 60068-1)
+//!             | letter letter letter                         "FME"  (DIN 40040)
+//! word        = a row of `text-words.toml`                   "SH"  "EN132400"  "_"
+//! lot         = six digits or more | five or more letters and digits mixed | three letters or more, all apart
 //! ```
 
 use super::lexicon::Lexicon;
@@ -12,6 +15,7 @@ use crate::tables::TABLES;
 
 /// Proposes the temperature or climatic category at a cell.
 pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mut Pieces) {
+    words(scan, at, lexicon, pieces);
     let Some(figures) = scan.whole(at) else {
         return;
     };
@@ -31,6 +35,53 @@ pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mu
     }
     if let Some(end) = climate(scan, at, lexicon) {
         push(end, 1.0);
+    }
+}
+
+fn words(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mut Pieces) {
+    let touches = |cell: usize| matches!(scan.sort(cell), Sort::Digit | Sort::Letter);
+    if scan.sort(at) != Sort::Sign && touches(at.wrapping_sub(1)) {
+        // A packing mark on a reel label touches the digits before it.
+        let behind_digits = scan.sort(at.wrapping_sub(1)) == Sort::Digit;
+        if scan.sort(at) != Sort::Letter || !behind_digits {
+            return;
+        }
+    }
+    for entry in lexicon.codes.texts.longest(scan, at) {
+        let end = at + entry.glyphs.len();
+        if !entry.ends_with_letter() || !touches(end) {
+            pieces.push((at, end), Meaning::Text, entry.meaning, 1.0);
+        }
+    }
+    if touches(at.wrapping_sub(1)) {
+        return;
+    }
+    let three = [scan.at(at), scan.at(at + 1), scan.at(at + 2)];
+    if scan.sort(at) == Sort::Letter
+        && !touches(at + 3)
+        && let Some(&evidence) = lexicon.codes.climates.get(&three)
+    {
+        pieces.push((at, at + 3), Meaning::Text, evidence, 1.0);
+    }
+    let mut end = at;
+    let mut n_digits = 0;
+    while touches(end) {
+        n_digits += usize::from(scan.sort(end) == Sort::Digit);
+        end += 1;
+    }
+    let n_letters = end - at - n_digits;
+    let mut known = lexicon.word_index.longest(scan, at);
+    if known.any(|word| word.glyphs.len() > 1) {
+        return;
+    }
+    let is_lot = match (n_digits, n_letters) {
+        (0, letters) => letters >= 3,
+        (digits, 0) => digits >= 6,
+        (digits, letters) => digits + letters >= 5,
+    };
+    if is_lot {
+        let weight = TABLES.ranking.factors.lot;
+        pieces.push((at, end), Meaning::Text, lexicon.codes.lot, weight);
     }
 }
 
@@ -76,7 +127,7 @@ mod tests {
         check("105°C", &["105°C"]);
         check("85 C", &["85 C"]);
         check("470C", &[]);
-        check("105CX", &[]);
+        check("105CX", &["105CX"]);
     }
 
     #[test]

@@ -37,7 +37,7 @@ pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mu
             weight *= factors.unit_letter_decimal;
         }
         let unit = &entry.meaning;
-        let amount = Amount::of(figures, unit.exponent);
+        let amount = Amount::of(figures, unit.exponent).map(|amount| amount.in_units(unit.scale));
         pieces.value((at, end), amount, unit.evidence, weight);
     }
 }

@@ -83,8 +83,9 @@ fn worded(scan: &Scan<'_>, figures: Figures, out: &mut Proposals<'_>) {
     let word_at = scan.after_blanks(figures.end);
     for entry in lexicon.voltage_words.longest(scan, word_at) {
         let end = word_at + entry.glyphs.len();
+        let is_point = entry.glyphs.len() == 1 && entry.meaning.scale > 1.0;
         let runs_on = if entry.ends_with_letter() {
-            scan.sort(end) == Sort::Letter
+            scan.sort(end) == Sort::Letter || (is_point && scan.sort(end) == Sort::Digit)
         } else {
             entry.glyphs.ends_with(b"-") && scan.sort(end) == Sort::Digit
         };

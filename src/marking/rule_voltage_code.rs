@@ -2,12 +2,13 @@
 //!
 //! ```text
 //! code   = digit letter          "2A" = 100 V, before the value or behind it; no letter follows, nor one or two digits
-//! single = letter                "107A"  "A475"
+//! single = letter                "107A"  "A475"; on parts with Cyrillic letters right behind the tolerance letter
 //! ```
 
 use super::lexicon::{Lexicon, Volts};
 use super::piece::{Form, Meaning, Pieces, Voltage};
 use super::scan::{Scan, Sort};
+use crate::tables::VoltageKind;
 
 /// Proposes the voltage codes at a cell.
 pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mut Pieces) {
@@ -30,6 +31,18 @@ fn single(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mut Pieces) {
     }
     let leads = n_behind == 3 && matches!(scan.sort(at.wrapping_sub(1)), Sort::Blank | Sort::Sign);
     let ends = n_before == 3 && matches!(scan.sort(at + 1), Sort::Blank | Sort::Sign);
+    if scan.sort(at.wrapping_sub(1)) == Sort::Letter
+        && !matches!(scan.sort(at + 1), Sort::Letter | Sort::Digit)
+        && scan.is_cyrillic()
+        && let Some(&(volts, evidence)) = lexicon.codes.soviet_volts.get(&scan.at(at))
+    {
+        let voltage = Voltage {
+            volts,
+            kind: VoltageKind::Dc,
+            form: Form::Said,
+        };
+        pieces.push((at, at + 1), Meaning::Voltage(voltage), evidence, 0.1);
+    }
     if leads || ends {
         for entry in lexicon.voltage_letters.starting(scan.at(at)) {
             push((at, at + 1), &entry.meaning, pieces);

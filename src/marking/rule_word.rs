@@ -1,14 +1,14 @@
 //! Words for families, temperature characteristics and classes of interference suppression.
 //!
 //! ```text
-//! word  = family [type number] | characteristic       "MKT"  "CBB22"  "NP0"  "X7R"
+//! word  = family [["-"] type number] | characteristic       "MKT"  "CBB22"  "K73-17"  "NP0"
 //! class = ("X" | "Y") digit                           "X2"  "X1Y2"
 //! ```
 
 use super::lexicon::Lexicon;
 use super::piece::{Meaning, Pieces};
 use super::scan::{Scan, Sort};
-use crate::tables::TABLES;
+use crate::tables::{Stands, TABLES};
 
 /// Proposes the words at a cell.
 pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mut Pieces) {
@@ -35,12 +35,25 @@ pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mu
         if scan.sort(end) == Sort::Letter {
             continue;
         }
+        let touches = |sort: Sort| matches!(sort, Sort::Digit | Sort::Letter);
         if word.characteristic.is_some() {
-            if scan.sort(end) != Sort::Digit {
+            let is_apart = !touches(before) && !touches(scan.sort(end));
+            let figures_follow = scan.figures(scan.after_blanks(end)).is_some();
+            let stands = match word.stands {
+                Stands::Anywhere => scan.sort(end) != Sort::Digit,
+                Stands::Apart => is_apart,
+                Stands::Before => is_apart && figures_follow,
+            };
+            if stands {
                 pieces.push((at, end), Meaning::Word(row), word.evidence, 1.0);
             }
         } else if before != Sort::Letter && before != Sort::Digit {
-            let type_number = scan.whole(end);
+            let ends_in_digit = scan.sort(end - 1) == Sort::Digit;
+            if ends_in_digit && scan.at(end) != b'-' {
+                continue;
+            }
+            let type_at = if scan.at(end) == b'-' { end + 1 } else { end };
+            let type_number = scan.whole(type_at);
             let alone = type_number.map_or(1.0, |_| TABLES.ranking.factors.word_alone);
             pieces.push((at, end), Meaning::Word(row), word.evidence, alone);
             if let Some(type_number) = type_number {
@@ -68,8 +81,9 @@ mod tests {
         check("MKTX", &[]);
         check("NP0", &["NP0"]);
         check("NP", &["NP"]);
-        check("X7R", &["X7R"]);
-        check("X7RS", &[]);
+        check("B 102K", &["B"]);
+        check("B102K", &[]);
+        check("К73-17", &["К73", "К73-17"]);
     }
 
     #[test]

@@ -9,17 +9,32 @@ pub(super) const MICRO: u8 = 0xB5;
 pub(super) const PLUS_MINUS: u8 = 0xB1;
 /// The degree sign.
 pub(super) const DEGREE: u8 = 0xB0;
+/// The first of the Cyrillic letters; small and capital ones are folded together.
+const CYRILLIC: u8 = 0xC0;
+/// The last of them.
+const CYRILLIC_LAST: u8 = 0xDF;
+/// A character that the person could not read.
+pub(super) const UNREADABLE: u8 = b'?';
 /// A letter of another script.
 const OTHER_LETTER: u8 = 0xFE;
 /// Any other character.
 const OTHER_SIGN: u8 = 0xFF;
 
 /// A text, one byte a character.
+#[derive(Clone)]
 pub(super) struct Scan<'t> {
     text: &'t str,
     glyphs: [u8; MOST_CELLS],
     starts: [u16; MOST_CELLS + 1],
     n_cells: usize,
+    facing: Facing,
+}
+
+/// How the part is held.
+#[derive(Clone, Copy, PartialEq, Eq)]
+enum Facing {
+    Upright,
+    UpsideDown,
 }
 
 /// Figures with at most one point.
@@ -56,6 +71,7 @@ impl<'t> Scan<'t> {
             glyphs: [b' '; MOST_CELLS],
             starts: [0; MOST_CELLS + 1],
             n_cells: 0,
+            facing: Facing::Upright,
         };
         let mut end = 0;
         for ((start, character), (slot, place)) in text
@@ -72,6 +88,29 @@ impl<'t> Scan<'t> {
             *place = u16::try_from(end).unwrap_or(u16::MAX);
         }
         scan
+    }
+
+    /// Takes one character for another.
+    pub(super) fn put(&mut self, cell: usize, glyph: u8) {
+        if let Some(slot) = self.glyphs.get_mut(cell) {
+            *slot = glyph;
+        }
+    }
+
+    /// Returns the text upside down: the last character first, each turned where it has a partner.
+    pub(super) fn turned(&self, partner: impl Fn(u8) -> Option<u8>) -> Self {
+        let mut turned = self.clone();
+        for (cell, &glyph) in self.rest(0).iter().rev().enumerate() {
+            turned.put(cell, partner(glyph).unwrap_or(glyph));
+        }
+        turned.facing = Facing::UpsideDown;
+        turned
+    }
+
+    /// Returns whether any letter is Cyrillic.
+    pub(super) fn is_cyrillic(&self) -> bool {
+        let is_one = |glyph: &u8| (CYRILLIC..=CYRILLIC_LAST).contains(glyph);
+        self.rest(0).iter().any(is_one)
     }
 
     /// Returns how many cells there are.
@@ -102,6 +141,13 @@ impl<'t> Scan<'t> {
     /// Returns the text of some cells.
     pub(super) fn text(&self, from: usize, to: usize) -> &'t str {
         let place = |cell: usize| self.starts.get(cell).copied().map_or(0, usize::from);
+        let (from, to) = match self.facing {
+            Facing::Upright => (from, to),
+            Facing::UpsideDown => (
+                self.n_cells.saturating_sub(to),
+                self.n_cells.saturating_sub(from),
+            ),
+        };
         self.text.get(place(from)..place(to)).unwrap_or_default()
     }
 
@@ -206,6 +252,17 @@ impl Figures {
     }
 }
 
+/// Returns a glyph as it is shown.
+pub(super) fn shown(glyph: u8) -> char {
+    match glyph {
+        MICRO => 'µ',
+        PLUS_MINUS => '±',
+        DEGREE => '°',
+        b' '..=b'~' => char::from(glyph),
+        _ => '?',
+    }
+}
+
 /// Returns 10 to a power of at most 9.
 pub(super) fn power_of_ten(n: usize) -> u32 {
     10u32.pow(u32::try_from(n.min(9)).unwrap_or(9))
@@ -216,7 +273,7 @@ pub(super) fn sort(glyph: u8) -> Sort {
     match glyph {
         b' ' => Sort::Blank,
         b'0'..=b'9' => Sort::Digit,
-        b'a'..=b'z' | b'A'..=b'Z' | MICRO | OTHER_LETTER => Sort::Letter,
+        b'a'..=b'z' | b'A'..=b'Z' | MICRO | CYRILLIC..=CYRILLIC_LAST | OTHER_LETTER => Sort::Letter,
         _ => Sort::Sign,
     }
 }
@@ -231,11 +288,19 @@ pub(super) fn glyph(character: char) -> u8 {
         '°' | 'º' => DEGREE,
         '‐' | '‑' | '‒' | '–' | '—' | '−' => b'-',
         '⎓' => b'=',
-        '∼' | '～' | '〜' => b'~',
+        '∼' | '～' | '〜' | '≂' => b'~',
+        'А'..='Я' => cyrillic(character, 'А'),
+        'а'..='я' => cyrillic(character, 'а'),
+        'ё' | 'Ё' => cyrillic('е', 'а'),
         _ if character.is_whitespace() || character.is_control() => b' ',
         _ if character.is_alphabetic() => OTHER_LETTER,
         _ => OTHER_SIGN,
     }
+}
+
+fn cyrillic(character: char, first: char) -> u8 {
+    let place = u32::from(character) - u32::from(first);
+    u8::try_from(place).map_or(OTHER_LETTER, |place| CYRILLIC + place)
 }
 
 #[cfg(test)]

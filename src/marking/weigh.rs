@@ -4,7 +4,7 @@ use super::RatedVoltage;
 use super::beam::Beam;
 use super::lexicon::View;
 use super::path::{NONE, Path};
-use super::piece::{Amount, Meaning, Voltage};
+use super::piece::{Amount, Date, Meaning, Voltage};
 use crate::quantity::{Farad, Tolerance, Volt};
 use crate::tables::{Factors, KINDS, Ranking, SeriesShares, ToleranceShares, VoltageKind};
 
@@ -22,6 +22,16 @@ pub(super) struct Ranked {
     pub(super) plausibility: f64,
     /// What makes it odd.
     pub(super) oddities: Oddities,
+    /// The sections; none on a part with one capacitor.
+    pub(super) sections: Vec<Amount>,
+    /// The date.
+    pub(super) date: Option<Date>,
+    /// The characteristic: a row of the words.
+    pub(super) characteristic: Option<u16>,
+    /// The kind of part that it looks like most, and how sure that is.
+    pub(super) likely: (usize, f64),
+    /// The way the marking was read.
+    pub(super) variant: u16,
 }
 
 /// What speaks against a reading, as factors; 1 is nothing.
@@ -35,15 +45,18 @@ pub(super) struct Oddities {
     pub(super) voltage: f64,
 }
 
-/// Farads below which a tolerance letter says a capacitance (IEC 60062).
-const SMALL_FARADS: f64 = 10e-12;
-
 /// Computes the mass of a path; it stands in `plausibility` until all are known.
-pub(super) fn weigh(beam: &Beam<'_, '_>, path: &Path, value: Amount, ranking: &Ranking) -> Ranked {
+pub(super) fn weigh(
+    beam: &Beam<'_, '_>,
+    path: &Path,
+    value: Amount,
+    ranking: &Ranking,
+    variant: u16,
+) -> Ranked {
     let (lexicon, factors) = (beam.lexicon, &ranking.factors);
     let capacitance = value.farads().get();
     let mut weight = path.weight;
-    let tolerance = tolerance(beam, path, capacitance, factors, &mut weight);
+    let tolerance = tolerance(beam, path, value, factors, &mut weight);
     let is_marked = path.slots.tolerance != NONE;
     let shares = series_shares(ranking, tolerance.filter(|_| is_marked), capacitance);
     let mut series = shares.of(lexicon.series_of(value.mantissa()));
@@ -75,6 +88,20 @@ pub(super) fn weigh(beam: &Beam<'_, '_>, path: &Path, value: Amount, ranking: &R
             range: part(usual.all, usual.but_range),
             voltage: part(usual.all, usual.but_voltage),
         },
+        sections: beam.sections(path.slots.value).unwrap_or_default().to_vec(),
+        date: match beam.piece(path.slots.date).map(|piece| piece.meaning) {
+            Some(Meaning::Date(date)) => Some(date),
+            _ => None,
+        },
+        characteristic: match beam
+            .piece(path.slots.characteristic)
+            .map(|piece| piece.meaning)
+        {
+            Some(Meaning::Word(row)) => Some(row),
+            _ => None,
+        },
+        likely: (usual.likely.0, part(usual.likely.1, usual.all)),
+        variant,
         path,
     }
 }
@@ -101,6 +128,8 @@ struct Usual {
     but_range: f64,
     /// The voltage taken as usual.
     but_voltage: f64,
+    /// The most probable kind and its part of the sum.
+    likely: (usize, f64),
 }
 
 /// Returns how usual the marks are together, summed over the kinds.
@@ -132,6 +161,9 @@ fn usual(beam: &Beam<'_, '_>, path: &Path, marks: &Marks, ranking: &Ranking) -> 
         let voltage: f64 = each
             .map(|v| voltage_factor(view, v.volts, factors))
             .product();
+        if share * range * voltage > sums.likely.1 {
+            sums.likely = (kind, share * range * voltage);
+        }
         sums.all += share * range * voltage;
         sums.but_range += share * voltage;
         sums.but_voltage += share * range;
@@ -143,11 +175,12 @@ fn usual(beam: &Beam<'_, '_>, path: &Path, marks: &Marks, ranking: &Ranking) -> 
 fn tolerance(
     beam: &Beam<'_, '_>,
     path: &Path,
-    capacitance: f64,
+    value: Amount,
     factors: &Factors,
     weight: &mut f64,
 ) -> Option<Tolerance> {
-    let is_small = capacitance < SMALL_FARADS;
+    let capacitance = value.farads().get();
+    let is_small = value.is_below_ten_picofarads();
     let tolerance = match beam.piece(path.slots.tolerance)?.meaning {
         Meaning::Limits(limits) => Some(limits),
         Meaning::Letter(row) => {

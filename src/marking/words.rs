@@ -1,20 +1,32 @@
 //! Readings in full: what was used for what, what was not, and why.
 
-use super::beam::Beam;
-use super::path::NONE;
-use super::piece::{Meaning, Piece};
+use super::beam::{self, Beam};
+use super::path::{NONE, Path};
+use super::piece::{Date, Meaning, Piece};
+use super::rank::Masses;
+use super::variants::Variant;
 use super::weigh::Ranked;
-use super::{Decoding, Reading, Role, Used};
-use crate::tables::TABLES;
+use super::{Decoding, Reading, Role, Used, WithoutValue};
+use crate::tables::{Family, TABLES};
 
 /// How many readings are given.
 const MOST_READINGS: usize = 50;
 /// From which factor on an oddity is named.
 const ODD: f64 = 0.2;
+/// From which share on the family that a reading looks like is named.
+const LIKELY: f64 = 0.5;
 
-/// Makes the answer from the ranked paths, most plausible first.
-pub(super) fn decoding(marking: &str, beam: &Beam<'_, '_>, ranked: &[Ranked]) -> Decoding {
+/// Makes the answer from the ranked paths, most plausible first. `beam` is that of the marking as typed; those of other ways
+/// of looking at it are searched again where one of their readings is shown.
+pub(super) fn decoding(
+    marking: &str,
+    beam: &Beam<'_, '_>,
+    family: Option<Family>,
+    variants: &[Variant],
+    masses: &Masses,
+) -> Decoding {
     let factors = &TABLES.ranking.factors;
+    let ranked = &masses.found;
     let best = ranked.first().map_or(0.0, |best| best.plausibility);
     let least = factors.least_plausibility.max(best * factors.least_share);
     let n_readings = ranked
@@ -22,11 +34,20 @@ pub(super) fn decoding(marking: &str, beam: &Beam<'_, '_>, ranked: &[Ranked]) ->
         .take_while(|one| one.plausibility >= least)
         .count();
     let shown = n_readings.min(MOST_READINGS);
-    let readings: Vec<Reading> = ranked
-        .iter()
-        .take(shown)
-        .map(|one| reading(beam, one))
-        .collect();
+    let mut readings: Vec<Reading> = Vec::with_capacity(shown);
+    for one in ranked.iter().take(shown) {
+        let variant = variants.get(usize::from(one.variant));
+        readings.push(match variant {
+            None | Some(Variant::AsTyped) => reading(beam, one),
+            Some(variant) => {
+                let changed = variant.of(beam.scan);
+                let beam_of_variant = beam::search(&changed, beam.lexicon, family);
+                let mut reading = reading(&beam_of_variant, one);
+                reading.why.splice(0..0, variant.in_words(beam.scan));
+                reading
+            }
+        });
+    }
     let everywhere = ranked
         .iter()
         .take(shown)
@@ -36,7 +57,25 @@ pub(super) fn decoding(marking: &str, beam: &Beam<'_, '_>, ranked: &[Ranked]) ->
         readings,
         unexplained: tokens(beam, everywhere),
         omitted: n_readings - shown,
+        without_value: masses
+            .without
+            .as_ref()
+            .and_then(|path| without_value(beam, path, masses.nothing)),
     }
+}
+
+/// Returns what the marking says if it says nothing of the value; `None` where that is nothing at all.
+fn without_value(beam: &Beam<'_, '_>, path: &Path, plausibility: f64) -> Option<WithoutValue> {
+    if plausibility < TABLES.ranking.factors.least_plausibility {
+        return None;
+    }
+    let pieces = beam.pieces_of(path);
+    let used = used(beam, &pieces);
+    (!used.is_empty()).then(|| WithoutValue {
+        plausibility,
+        why: said(beam, &pieces),
+        used,
+    })
 }
 
 /// Returns the text of the cells of a mask, run by run; blanks end a run.
@@ -69,25 +108,16 @@ fn beyond(beam: &Beam<'_, '_>) -> Option<String> {
 fn reading(beam: &Beam<'_, '_>, one: &Ranked) -> Reading {
     let slots = &one.path.slots;
     let pieces = beam.pieces_of(&one.path);
-    let mut used = Vec::with_capacity(pieces.len());
-    for piece in &pieces {
-        if let Some(role) = role(piece, beam) {
-            let text = piece.text(beam.scan).to_owned();
-            used.push(Used { text, role });
-        }
-    }
     let class = match (slots.x, slots.y) {
         (0, 0) => None,
         (x, 0) => Some(format!("X{x}")),
         (0, y) => Some(format!("Y{y}")),
         (x, y) => Some(format!("X{x}/Y{y}")),
     };
-    let characteristic = beam
-        .piece(slots.characteristic)
-        .and_then(|piece| match piece.meaning {
-            Meaning::Word(row) => beam.lexicon.words.get(usize::from(row))?.characteristic,
-            _ => None,
-        });
+    let words = &beam.lexicon.words;
+    let characteristic = one
+        .characteristic
+        .and_then(|row| words.get(usize::from(row))?.characteristic.as_deref());
     let unexplained = if one.path.unexplained == 0 {
         beyond(beam).into_iter().collect()
     } else {
@@ -100,28 +130,51 @@ fn reading(beam: &Beam<'_, '_>, one: &Ranked) -> Reading {
         family: slots.family,
         characteristic: characteristic.map(str::to_owned),
         safety_class: class,
-        date: None,
-        sections: None,
+        date: one.date.map(Date::in_words),
+        sections: (!one.sections.is_empty()).then(|| {
+            one.sections
+                .iter()
+                .map(|section| section.farads())
+                .collect()
+        }),
         plausibility: one.plausibility,
         why: reasons(beam, one, &pieces, &unexplained),
-        used,
+        used: used(beam, &pieces),
         unexplained,
     }
 }
 
+/// Returns what each piece was used for; two bands that were typed as one word are shown once.
+fn used(beam: &Beam<'_, '_>, pieces: &[&Piece]) -> Vec<Used> {
+    let mut used = Vec::with_capacity(pieces.len());
+    let mut last = (u8::MAX, u8::MAX);
+    for piece in pieces {
+        let cells = (piece.start, piece.end);
+        if let Some(role) = role(piece, beam).filter(|_| cells != last && cells.0 < cells.1) {
+            let text = piece.text(beam.scan).to_owned();
+            used.push(Used { text, role });
+            last = cells;
+        }
+    }
+    used
+}
+
 fn role(piece: &Piece, beam: &Beam<'_, '_>) -> Option<Role> {
     Some(match piece.meaning {
-        Meaning::Value(_) => Role::Value,
+        Meaning::Value(_) | Meaning::Sections(_) => Role::Value,
+        Meaning::Date(_) => Role::Date,
+        Meaning::Part(role) => role,
         Meaning::Limits(_) | Meaning::Letter(_) => Role::Tolerance,
         Meaning::Voltage(_) => Role::Voltage,
         Meaning::Word(row) => {
             let word = beam.lexicon.words.get(usize::from(row))?;
             word.characteristic
+                .as_ref()
                 .map_or(Role::Family, |_| Role::Characteristic)
         }
         Meaning::Safety(_) => Role::SafetyClass,
         Meaning::Text | Meaning::Separator => Role::Text,
-        Meaning::Unexplained => return None,
+        Meaning::Unexplained | Meaning::Group(..) => return None,
     })
 }
 
@@ -131,18 +184,18 @@ fn reasons(
     pieces: &[&Piece],
     unexplained: &[String],
 ) -> Vec<String> {
-    let mut found: Vec<String> = Vec::with_capacity(pieces.len() + 2);
-    for piece in pieces {
-        let reason = beam.lexicon.reason(piece.evidence);
-        if let Some(why) = reason
-            .map(|reason| reason.why.as_str())
-            .filter(|why| !why.is_empty())
-        {
-            let text = piece.text(beam.scan);
-            found.push([text, ": ", why].concat());
-        }
-    }
+    let mut found = said(beam, pieces);
+    found.reserve(4);
     let slots = &one.path.slots;
+    if slots.family.is_none() {
+        found.extend(likely_family(one));
+    }
+    if one.sections.len() > 1 {
+        found.push(format!(
+            "{} sections; the value is that of the first",
+            one.sections.len()
+        ));
+    }
     if slots.contradicts != NONE {
         found.extend(
             beam.piece(slots.contradicts)
@@ -164,12 +217,48 @@ fn reasons(
     found
 }
 
+/// Returns the reasons that the pieces carry.
+fn said(beam: &Beam<'_, '_>, pieces: &[&Piece]) -> Vec<String> {
+    let mut found: Vec<String> = Vec::with_capacity(pieces.len() + 4);
+    for piece in pieces {
+        let reason = beam.lexicon.reason(piece.evidence);
+        if let Some(why) = reason
+            .map(|reason| reason.why.as_str())
+            .filter(|why| !why.is_empty())
+        {
+            let text = match piece.meaning {
+                Meaning::Group(..) => "the whole",
+                _ if piece.start == piece.end => "not printed",
+                _ => piece.text(beam.scan),
+            };
+            found.push([text, ": ", why].concat());
+            if let Meaning::Date(date) = piece.meaning {
+                found.push([text, ": ", &date.in_words()].concat());
+            }
+        }
+    }
+    found
+}
+
+/// Returns what kind of part the reading looks like, and how sure that is.
+fn likely_family(one: &Ranked) -> Option<String> {
+    let (kind, share) = one.likely;
+    let kind = TABLES.ranking.kinds.get(kind).filter(|_| share >= LIKELY)?;
+    let families: Vec<&str> = kind.families.iter().map(|family| family.name()).collect();
+    let percent = (share * 100.0).round();
+    Some(format!(
+        "looks like {} ({percent} of 100 such markings)",
+        families.join(" or ")
+    ))
+}
+
 fn contradiction(beam: &Beam<'_, '_>, piece: &Piece) -> String {
     let what = match piece.meaning {
         Meaning::Limits(_) | Meaning::Letter(_) => "a second tolerance",
         Meaning::Voltage(_) => "a second rated voltage",
         Meaning::Word(_) => "another family or characteristic",
         Meaning::Safety(_) => "a second class of its duty",
+        Meaning::Date(_) => "a second date",
         _ => "a second value",
     };
     format!(

@@ -3,22 +3,35 @@
 //! A table is one file; [`TABLES`] holds all of them. Code that uses a fact takes it from there, so that a new code letter
 //! is a row and no code. [`rows`] lists every fact in words, [`check`] reads one file and says what is wrong with it.
 
+mod characteristics;
 mod codes;
+mod colours;
+mod dates;
 pub mod document;
 mod facts;
 mod family;
+mod military;
 mod names;
+mod plain;
 mod ranking;
 mod read;
 mod values;
 mod without_bias;
 mod words;
 
+pub use characteristics::{
+    BritishLetter, BritishPlace, Characteristic, CharacteristicMark, Stands,
+};
 pub use codes::{
     Multiplier, Parts, Share, Standing, ToleranceLetter, ToleranceWord, VoltageCode, VoltageLetter,
 };
+pub use colours::{BandUse, ColourMeaning, ColourSystem, ColourWord};
+pub use dates::{Beside, ClimateLetter, DateMark, LookAlike, Mistaken, TextWord, Unreadable};
 pub use facts::{FamilyFacts, FamilyRow, LossLimit, family_facts};
 pub use family::{Dielectric, Family, Group};
+pub use military::{
+    ChipMantissa, Field, MilitaryMark, MilitaryStyle, MilitaryVoltage, SovietVoltage,
+};
 pub use names::{ClimateFigure, ClimatePlace, FamilyWord, SafetyWord};
 pub use ranking::{
     Evidence, Factors, KINDS, Kind, Ranking, SeriesRow, SeriesShares, ToleranceShares,
@@ -104,6 +117,22 @@ tables! {
     family_words: names::RawFamilyWord => FamilyWord, "family-words.toml", "Returns the words for families and characteristics.";
     safety_words: names::RawSafetyWord => SafetyWord, "safety-classes.toml", "Returns the classes of interference suppression.";
     climate_figures: names::RawClimateFigure => ClimateFigure, "climate.toml", "Returns the figures of climatic categories.";
+    characteristics: characteristics::RawCharacteristic => Characteristic, "characteristics.toml", "Returns the words for temperature characteristics.";
+    characteristic_marks: characteristics::RawCharacteristicMark => CharacteristicMark, "characteristic-codes.toml", "Returns the places of codes for temperature characteristics.";
+    british_letters: characteristics::RawBritishLetter => BritishLetter, "british-letters.toml", "Returns the letters of the old British marking.";
+    date_marks: dates::RawDateMark => DateMark, "date-marks.toml", "Returns the marks for years and months.";
+    text_words: dates::RawTextWord => TextWord, "text-words.toml", "Returns the words that say nothing of the values.";
+    climate_letters: dates::RawClimateLetter => ClimateLetter, "climate-letters.toml", "Returns the letters of climatic categories.";
+    look_alikes: dates::RawLookAlike => LookAlike, "look-alikes.toml", "Returns the characters that are read as others.";
+    unreadables: dates::RawUnreadable => Unreadable, "unreadable.toml", "Returns the characters tried where one cannot be read.";
+    chip_mantissas: military::RawChipMantissa => ChipMantissa, "chip-mantissas.toml", "Returns the letters of chip ceramic parts.";
+    military_styles: military::RawMilitaryStyle => MilitaryStyle, "military-styles.toml", "Returns the styles of military part numbers.";
+    military_marks: military::RawMilitaryMark => MilitaryMark, "military-marks.toml", "Returns the letters of military part numbers.";
+    military_voltages: military::RawMilitaryVoltage => MilitaryVoltage, "military-voltages.toml", "Returns the voltages that follow from style and value.";
+    soviet_voltages: military::RawSovietVoltage => SovietVoltage, "soviet-voltages.toml", "Returns the voltage letters of Soviet parts.";
+    colour_words: colours::RawColourWord => ColourWord, "colour-words.toml", "Returns the words for colours.";
+    colours: colours::RawColourMeaning => ColourMeaning, "colours.toml", "Returns what colours say.";
+    colour_systems: colours::RawColourSystem => ColourSystem, "colour-systems.toml", "Returns the orders of bands and dots.";
     without_bias: without_bias::RawWithoutBias => WithoutBias, "without-bias.toml", "Returns the voltages for polarised families.";
     families: facts::RawFamilyRow => FamilyRow, "families.toml", "Returns the members of families, and the groups without named ones.";
 }

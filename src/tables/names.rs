@@ -6,15 +6,13 @@ use super::words::some_text;
 use serde::Deserialize;
 use std::fmt;
 
-/// A word that names a family or a temperature characteristic.
+/// A word that names a family.
 #[derive(Clone, Debug, PartialEq)]
 pub struct FamilyWord {
     /// The word.
     pub word: String,
     /// The family.
     pub family: Family,
-    /// The characteristic, by its usual name.
-    pub characteristic: Option<String>,
     /// The kinds of the ranking table that the part can be; empty: those of the family.
     pub kinds: Vec<String>,
 }
@@ -24,7 +22,6 @@ pub struct FamilyWord {
 pub(super) struct RawFamilyWord {
     word: String,
     family: String,
-    characteristic: Option<String>,
     kinds: Option<Vec<String>>,
     source: Option<String>,
 }
@@ -41,7 +38,6 @@ impl RawRow for RawFamilyWord {
         Ok(FamilyWord {
             word: some_text(self.word)?,
             family: family(&self.family)?,
-            characteristic: self.characteristic,
             kinds: self.kinds.unwrap_or_default(),
         })
     }
@@ -49,11 +45,7 @@ impl RawRow for RawFamilyWord {
 
 impl fmt::Display for FamilyWord {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        write!(f, "{}: {}", self.word, self.family)?;
-        match &self.characteristic {
-            Some(name) => write!(f, ", characteristic {name}"),
-            None => Ok(()),
-        }
+        write!(f, "{}: {}", self.word, self.family)
     }
 }
 

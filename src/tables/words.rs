@@ -13,6 +13,8 @@ pub struct UnitWord {
     pub word: String,
     /// The power of ten of the unit in farad.
     pub exponent: i8,
+    /// The unit in hundred-thousandths of that power of ten, where it is none.
+    pub scale: Option<u32>,
     /// The row of the ranking table.
     pub notation: String,
     /// How often the word means this, 0 to 1.
@@ -24,6 +26,7 @@ pub struct UnitWord {
 pub(super) struct RawUnitWord {
     word: String,
     exponent: i8,
+    scale: Option<u32>,
     notation: String,
     share: Option<f64>,
     source: Option<String>,
@@ -41,6 +44,7 @@ impl RawRow for RawUnitWord {
         Ok(UnitWord {
             word: some_text(self.word)?,
             exponent: exponent(self.exponent)?,
+            scale: self.scale,
             notation: self.notation,
             share: Share::read(self.share, None)?.usual,
         })
@@ -48,9 +52,13 @@ impl RawRow for RawUnitWord {
 }
 
 impl fmt::Display for UnitWord {
-    /// Writes "mfd: 1 µF".
+    /// Writes "mfd: 1 µF", "cm: 1.11265 times 1 pF".
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        write!(f, "{}: {}", self.word, unit(self.exponent))
+        write!(f, "{}: ", self.word)?;
+        if let Some(scale) = self.scale {
+            write!(f, "{} times ", f64::from(scale) / 1e5)?;
+        }
+        f.write_str(&unit(self.exponent))
     }
 }
 
