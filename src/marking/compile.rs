@@ -6,6 +6,7 @@ use super::lexicon::{
 };
 use super::piece::{Class, WHOLE_UNIT};
 use super::{compile_codes, compile_colours};
+use crate::quantity::Farad;
 use crate::tables::{
     ClimatePlace, Family, KINDS, Place, Ranking, Series, Share, Stands, TABLES, VoltageKind,
     family_facts,
@@ -170,6 +171,11 @@ fn voltage_codes(evidence: u16) -> ByFirst<Volts> {
                 evidence,
                 share: 1.0,
             };
+            if digit == 0 {
+                // The letter O is printed for the zero now and then.
+                let share = TABLES.ranking.factors.date_other_order;
+                codes.push((format!("O{}", row.letter), Volts { share, ..volts }));
+            }
             codes.push((format!("{digit}{}", row.letter), volts));
         }
     }
@@ -282,6 +288,10 @@ fn view(ranking: &Ranking, family: Option<Family>) -> [View; KINDS] {
         let most = |ends: &mut dyn Iterator<Item = f64>| ends.fold(0.0, f64::max);
         *view = View {
             prior: kind.prior * part,
+            common: (
+                kind.common.low.map_or(0.0, Farad::get),
+                kind.common.high.map_or(f64::INFINITY, Farad::get),
+            ),
             capacitance: (
                 least(&mut facts.iter().filter_map(|f| Some(f.usual_range.low?.get()))),
                 most(&mut facts.iter().filter_map(|f| Some(f.usual_range.high?.get()))),

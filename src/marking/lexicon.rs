@@ -85,6 +85,8 @@ pub(super) struct View {
     pub(super) prior: f64,
     /// Lowest and highest usual capacitance, farad.
     pub(super) capacitance: (f64, f64),
+    /// Where most capacitances lie, farad.
+    pub(super) common: (f64, f64),
     /// Lowest and highest usual voltage, volt.
     pub(super) voltage: (f64, f64),
 }
@@ -207,6 +209,7 @@ impl Lexicon {
 pub(super) const NO_VIEW: View = View {
     prior: 0.0,
     capacitance: (0.0, 0.0),
+    common: (0.0, 0.0),
     voltage: (0.0, 0.0),
 };
 

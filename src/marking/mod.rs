@@ -74,6 +74,7 @@ pub fn decode(text: &str, family: Option<Family>) -> Decoding {
             for variant in more {
                 let changed = variant.of(&scan);
                 let number = u16::try_from(variants.len()).unwrap_or(u16::MAX);
+                let weight = variant.share(weight);
                 masses.add(&beam::search(&changed, &LEXICON, family), number, weight);
                 variants.push(variant);
             }
@@ -92,8 +93,7 @@ pub fn decode(text: &str, family: Option<Family>) -> Decoding {
             );
         }
     } else {
-        let share = 1.0 / completions.len() as f64;
-        add(completions, share, &mut variants, &mut masses);
+        add(completions, 1.0, &mut variants, &mut masses);
     }
     masses.rank();
     words::decoding(text, &beam, family, &variants, &masses)

@@ -175,6 +175,9 @@ impl Path {
                     self.weight *= factors.repeated;
                 } else if is_ac(first) || is_ac(voltage) {
                     self.slots.voltages[1] = place;
+                } else if voltage.form == Form::Bare {
+                    // A mere number beside another voltage is something else.
+                    return false;
                 } else {
                     return self.contradict(place, factors);
                 }

@@ -80,7 +80,12 @@ fn words(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mut Pieces) {
         (digits, letters) => digits + letters >= 5,
     };
     if is_lot {
-        let weight = TABLES.ranking.factors.lot;
+        let factors = &TABLES.ranking.factors;
+        let weight = if n_letters == 0 {
+            factors.lot_figures
+        } else {
+            factors.lot
+        };
         pieces.push((at, end), Meaning::Text, lexicon.codes.lot, weight);
     }
 }

@@ -14,7 +14,6 @@ use crate::tables::VoltageKind;
 pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mut Pieces) {
     if scan.sort(at) == Sort::Letter {
         single(scan, at, lexicon, pieces);
-        return;
     }
     let value_follows = scan.whole(at + 2).is_none_or(|value| value.n_whole >= 3);
     let is_apart = scan.sort(at + 2) != Sort::Letter && value_follows;

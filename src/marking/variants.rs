@@ -19,12 +19,12 @@ pub(super) const MOST_COMPLETIONS: usize = 512;
 pub(super) const MOST_SLIPS: usize = 8;
 
 /// A way of looking at a marking.
-#[derive(Clone, Debug, PartialEq, Eq)]
+#[derive(Clone, Debug, PartialEq)]
 pub(super) enum Variant {
     /// As typed.
     AsTyped,
-    /// With characters completed: cell and glyph.
-    Completed(Vec<(usize, u8)>),
+    /// With characters completed: cell and glyph; and how probable these characters are.
+    Completed(Vec<(usize, u8)>, f64),
     /// With one character taken for its look-alike.
     Slip(usize, u8),
     /// Upside down.
@@ -37,11 +37,19 @@ static LISTS: LazyLock<Lists> = LazyLock::new(|| {
         rows.map(|row| (glyph(row.read), glyph(row.printed)))
             .collect()
     };
+    let rare = TABLES.ranking.factors.rare_character;
     let characters = |beside: Beside| {
         let mut rows = TABLES.unreadables().filter(|row| row.beside == beside);
-        rows.next()
-            .map(|row| row.characters.chars().map(glyph).collect())
-            .unwrap_or_default()
+        let Some(row) = rows.next() else {
+            return Vec::new();
+        };
+        let usual = row.characters.chars().map(|c| (glyph(c), 1.0));
+        let rare = row.rare.chars().map(|c| (glyph(c), rare));
+        let all: Vec<(u8, f64)> = usual.chain(rare).collect();
+        let whole: f64 = all.iter().map(|one| one.1).sum();
+        all.into_iter()
+            .map(|(glyph, share)| (glyph, share / whole))
+            .collect()
     };
     Lists {
         worn: of(Mistaken::Worn),
@@ -54,8 +62,8 @@ static LISTS: LazyLock<Lists> = LazyLock::new(|| {
 struct Lists {
     worn: Vec<(u8, u8)>,
     turned: Vec<(u8, u8)>,
-    alone: Vec<u8>,
-    others: Vec<u8>,
+    alone: Vec<(u8, f64)>,
+    others: Vec<(u8, f64)>,
 }
 
 impl Variant {
@@ -63,7 +71,7 @@ impl Variant {
     pub(super) fn of<'t>(&self, scan: &Scan<'t>) -> Scan<'t> {
         match self {
             Self::AsTyped => scan.clone(),
-            Self::Completed(glyphs) => {
+            Self::Completed(glyphs, _) => {
                 glyphs
                     .iter()
                     .fold(scan.clone(), |mut scan, &(cell, glyph)| {
@@ -80,12 +88,20 @@ impl Variant {
         }
     }
 
+    /// Returns how probable it is; `otherwise` for those that do not say.
+    pub(super) fn share(&self, otherwise: f64) -> f64 {
+        match self {
+            Self::Completed(_, share) => *share,
+            _ => otherwise,
+        }
+    }
+
     /// Returns what is said of it.
     pub(super) fn in_words(&self, scan: &Scan<'_>) -> Option<String> {
         let shown = |glyph: u8| super::scan::shown(glyph);
         match self {
             Self::AsTyped => None,
-            Self::Completed(glyphs) => {
+            Self::Completed(glyphs, _) => {
                 let read: Vec<String> = glyphs
                     .iter()
                     .map(|&(_, glyph)| format!("? read as {}", shown(glyph)))
@@ -119,23 +135,23 @@ pub(super) fn completions(scan: &Scan<'_>) -> Vec<Variant> {
         1 => &LISTS.alone,
         _ => &LISTS.others,
     };
-    let mut variants = vec![Vec::new()];
+    let mut variants = vec![(Vec::new(), 1.0)];
     for &cell in &cells {
         if variants.len() * list.len() > MOST_COMPLETIONS {
             break;
         }
-        let longer = |variant: &Vec<(usize, u8)>| {
-            let variant = variant.clone();
-            let with = move |&glyph: &u8| {
-                let mut variant = variant.clone();
-                variant.push((cell, glyph));
-                variant
+        let longer = |(glyphs, share): &(Vec<(usize, u8)>, f64)| {
+            let with = |&(glyph, part): &(u8, f64)| {
+                let mut glyphs = glyphs.clone();
+                glyphs.push((cell, glyph));
+                (glyphs, share * part)
             };
             list.iter().map(with).collect::<Vec<_>>()
         };
         variants = variants.iter().flat_map(longer).collect();
     }
-    variants.into_iter().map(Variant::Completed).collect()
+    let completed = |(glyphs, share)| Variant::Completed(glyphs, share);
+    variants.into_iter().map(completed).collect()
 }
 
 /// Returns the ways with one look-alike.

@@ -239,7 +239,13 @@ fn range_factor(view: &View, capacitance: f64, factors: &Factors) -> f64 {
     const SLACK: f64 = 1.0 + 1e-9;
     let (low, high) = view.capacitance;
     if low <= capacitance * SLACK && capacitance <= high * SLACK {
-        1.0
+        let (low, high) = view.common;
+        let is_common = low <= capacitance * SLACK && capacitance <= high * SLACK;
+        if is_common {
+            1.0
+        } else {
+            factors.outside_common
+        }
     } else if low / 10.0 <= capacitance && capacitance <= high * 10.0 {
         factors.outside_range
     } else {

@@ -84,12 +84,14 @@ plain_row! {
     Unreadable from RawUnreadable {
         /// Beside what: "figures" or "letters".
         beside: Beside,
-        /// The characters, each as probable as the others.
+        /// The usual characters, each as probable as the others.
         characters: String,
+        /// Rare ones.
+        rare: String,
     }
     key(row) format!("{:?}", row.beside);
     check(row) row.characters.is_empty().then(|| "no characters".to_owned());
-    show(row, f) write!(f, "{}", row.characters);
+    show(row, f) write!(f, "{}, rarely {}", row.characters, row.rare);
 }
 
 /// What stands beside an unreadable character.

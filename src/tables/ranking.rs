@@ -3,6 +3,7 @@
 use super::names::family;
 use super::read::{Sourced, TableError, TableRow, head, place, read_toml};
 use super::{Family, Series};
+use crate::quantity::{Farad, Span};
 use serde::Deserialize;
 use std::collections::BTreeMap;
 use toml::Spanned;
@@ -19,6 +20,8 @@ pub struct Kind {
     pub families: Vec<Family>,
     /// Its share in a lot, 0 to 1.
     pub prior: f64,
+    /// Where most of the values lie.
+    pub common: Span<Farad>,
     /// How usual a marked tolerance is.
     pub tolerances: ToleranceShares,
 }
@@ -116,6 +119,7 @@ macro_rules! factors {
 }
 
 factors!(
+    outside_common: "A capacitance within the usual range, but not where most values lie.",
     outside_range: "A capacitance within a decade of the usual range.",
     far_outside_range: "A capacitance beyond that.",
     outside_voltage: "A voltage within a factor of three of the usual ones.",
@@ -144,6 +148,8 @@ factors!(
     unexplained_more_letters: "Each further letter left unexplained.",
     unexplained_touching: "Anything left unexplained that touches letters or figures.",
     unexplained_sign: "A sign left unexplained.",
+    lot_figures: "Six figures or more: a lot or type number.",
+    rare_character: "A rare character in the place of an unreadable one.",
     lot: "A lot, series or type number.",
     characteristic_touches: "A characteristic that touches letters or figures.",
     maker_before_code: "A maker's letters before a chip code.",
@@ -204,6 +210,7 @@ struct RawKind {
     name: String,
     families: Vec<String>,
     prior: f64,
+    common: String,
     tolerances: ToleranceShares,
 }
 
@@ -326,6 +333,7 @@ fn kind(raw: RawKind) -> Result<Kind, String> {
         name: raw.name,
         families: families?,
         prior: raw.prior,
+        common: Span::parse(&raw.common).map_err(|refusal| refusal.to_string())?,
         tolerances: raw.tolerances,
     })
 }

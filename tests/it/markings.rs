@@ -63,7 +63,8 @@ fn mistake(case: &Case) -> Option<String> {
     if case.why.is_empty() || case.source.is_empty() {
         return shown("no why or no source");
     }
-    if case.readings.is_empty() && !words.is_empty() || !words.starts_with(&case.readings) {
+    let nothing_expected = case.readings.is_empty() && case.at_most.is_none();
+    if nothing_expected && !words.is_empty() || !words.starts_with(&case.readings) {
         return shown("other readings first");
     }
     if let Some(missing) = case.also.iter().find(|also| !words.contains(also)) {
