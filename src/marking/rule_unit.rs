@@ -8,7 +8,7 @@
 
 use super::lexicon::Lexicon;
 use super::piece::{Amount, Pieces};
-use super::scan::{Scan, Sort};
+use super::scan::{Scan, Sort, is_cyrillic};
 use crate::tables::TABLES;
 
 /// Proposes the values of a number with a unit at a cell.
@@ -22,7 +22,8 @@ pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mu
         let end = word_at + entry.glyphs.len();
         let is_letter = entry.glyphs.len() == 1;
         let runs_on = entry.ends_with_letter() && scan.sort(end) == Sort::Letter;
-        let followed = is_letter && scan.at(end).is_ascii_uppercase();
+        let followed =
+            is_letter && (scan.at(end).is_ascii_uppercase() || is_cyrillic(scan.at(end)));
         if runs_on && !followed {
             continue;
         }

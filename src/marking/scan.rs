@@ -109,8 +109,7 @@ impl<'t> Scan<'t> {
 
     /// Returns whether any letter is Cyrillic.
     pub(super) fn is_cyrillic(&self) -> bool {
-        let is_one = |glyph: &u8| (CYRILLIC..=CYRILLIC_LAST).contains(glyph);
-        self.rest(0).iter().any(is_one)
+        self.rest(0).iter().any(|&glyph| is_cyrillic(glyph))
     }
 
     /// Returns how many cells there are.
@@ -261,6 +260,11 @@ pub(super) fn shown(glyph: u8) -> char {
         b' '..=b'~' => char::from(glyph),
         _ => '?',
     }
+}
+
+/// Returns whether a glyph is a Cyrillic letter.
+pub(super) fn is_cyrillic(glyph: u8) -> bool {
+    (CYRILLIC..=CYRILLIC_LAST).contains(&glyph)
 }
 
 /// Returns 10 to a power of at most 9.

@@ -12,6 +12,7 @@ mod layers;
 mod logs;
 mod markings;
 mod planted;
+mod printings;
 mod profiles;
 mod properties;
 mod pty;

@@ -8,17 +8,17 @@ use serde::Deserialize;
 
 #[derive(Deserialize)]
 #[serde(deny_unknown_fields)]
-struct Corpus {
-    case: Vec<Case>,
+pub(super) struct Corpus {
+    pub(super) case: Vec<Case>,
 }
 
 #[derive(Deserialize)]
 #[serde(deny_unknown_fields)]
-struct Case {
+pub(super) struct Case {
     name: String,
-    marking: String,
-    family: Option<String>,
-    readings: Vec<String>,
+    pub(super) marking: String,
+    pub(super) family: Option<String>,
+    pub(super) readings: Vec<String>,
     #[serde(default)]
     also: Vec<String>,
     at_most: Option<f64>,
@@ -28,10 +28,14 @@ struct Case {
     source: String,
 }
 
+/// Returns the corpus.
+pub(super) fn corpus() -> Corpus {
+    toml::from_str(include_str!("../cases/markings.toml")).expect("the corpus is TOML")
+}
+
 #[test]
 fn the_corpus_reads_as_expected() {
-    let corpus: Corpus =
-        toml::from_str(include_str!("../cases/markings.toml")).expect("the corpus is TOML");
+    let corpus = corpus();
     let wrong: Vec<String> = corpus.case.iter().filter_map(mistake).collect();
     assert!(wrong.is_empty(), "{}", wrong.join("\n"));
 }
