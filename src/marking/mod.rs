@@ -20,8 +20,10 @@ mod compile;
 mod compile_codes;
 mod compile_colours;
 mod lexicon;
+mod marks;
 mod path;
 mod piece;
+mod print;
 mod rank;
 mod reading;
 mod rule_british;
@@ -48,6 +50,7 @@ mod variants;
 mod weigh;
 mod words;
 
+pub use marks::{Mark, Wanted, marks};
 pub use reading::{Decoding, RatedVoltage, Reading, Role, Used, WithoutValue};
 
 use crate::tables::{Family, TABLES};

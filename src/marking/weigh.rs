@@ -235,7 +235,8 @@ fn width_share(shares: &ToleranceShares, tolerance: Option<Tolerance>) -> f64 {
     }
 }
 
-fn range_factor(view: &View, capacitance: f64, factors: &Factors) -> f64 {
+/// Returns how usual a capacitance is for a kind of part.
+pub(super) fn range_factor(view: &View, capacitance: f64, factors: &Factors) -> f64 {
     const SLACK: f64 = 1.0 + 1e-9;
     let (low, high) = view.capacitance;
     if low <= capacitance * SLACK && capacitance <= high * SLACK {

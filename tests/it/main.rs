@@ -11,6 +11,7 @@ mod lamp;
 mod layers;
 mod logs;
 mod markings;
+mod marks;
 mod planted;
 mod printings;
 mod profiles;

@@ -191,6 +191,7 @@ fn systems() -> Vec<System> {
         plain::words(),
         older::systems(),
         older::bare(),
+        older::beside(),
         marked::polar(),
         marked::ceramics(),
         marked::others(),

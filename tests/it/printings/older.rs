@@ -47,28 +47,6 @@ pub(super) fn systems() -> Vec<System> {
         };
         part(text, value).rated(350.0).of("al")
     });
-    let dated = values(&E12, 3..5)
-        .enumerate()
-        .map(|(n, (mantissa, power))| {
-            let date = ["J8", "8323", "SD", "9812"][n % 4];
-            part(
-                format!("{mantissa}{power}J 100V {date}"),
-                pico(mantissa, power),
-            )
-            .within(5.0)
-            .rated(100.0)
-        });
-    let lots = values(&E12, 3..5)
-        .enumerate()
-        .filter_map(|(n, (mantissa, power))| {
-            let lot = ["3046712", "HX27Q4", "LOT 7731205", "EN132400"][n % 4];
-            let text = pointed(mantissa, power, &SI)?;
-            Some(
-                part(format!("{lot} {text}K 250V"), pico(mantissa, power))
-                    .within(10.0)
-                    .rated(250.0),
-            )
-        });
     let small = values(&E12, -1..0).map(|(mantissa, power)| {
         let value = pico(mantissa, power);
         Printed {
@@ -105,8 +83,6 @@ pub(super) fn systems() -> Vec<System> {
             five.collect(),
         ),
         system("sections of a can", Bare::No, sections.collect()),
-        system("value, volts and a date", Bare::No, dated.collect()),
-        system("value, volts and a lot", Bare::No, lots.collect()),
         system(
             "decimal pF and a tolerance, disc",
             Bare::No,
@@ -155,5 +131,35 @@ pub(super) fn bare() -> Vec<System> {
         system("decimal pF", Bare::Yes, bare_decimal.collect()),
         system("decimal µF from 1 up", Bare::Yes, bare_micro.collect()),
         system("polar code ending in 8", Bare::Yes, bare_polar8.collect()),
+    ]
+}
+
+/// Values with a date or a lot beside them.
+pub(super) fn beside() -> Vec<System> {
+    let dated = values(&E12, 3..5)
+        .enumerate()
+        .map(|(n, (mantissa, power))| {
+            let date = ["J8", "8323", "SD", "9812"][n % 4];
+            part(
+                format!("{mantissa}{power}J 100V {date}"),
+                pico(mantissa, power),
+            )
+            .within(5.0)
+            .rated(100.0)
+        });
+    let lots = values(&E12, 3..5)
+        .enumerate()
+        .filter_map(|(n, (mantissa, power))| {
+            let lot = ["3046712", "HX27Q4", "LOT 7731205", "EN132400"][n % 4];
+            let text = pointed(mantissa, power, &SI)?;
+            Some(
+                part(format!("{lot} {text}K 250V"), pico(mantissa, power))
+                    .within(10.0)
+                    .rated(250.0),
+            )
+        });
+    vec![
+        system("value, volts and a date", Bare::No, dated.collect()),
+        system("value, volts and a lot", Bare::No, lots.collect()),
     ]
 }
