@@ -79,6 +79,8 @@ pub(super) enum Command {
     Decode(DecodeArgs),
     /// Say where the lamp will go dark for a part
     Predict(PredictArgs),
+    /// Say how a part is likely to be marked
+    Marks(MarksArgs),
     /// Judge a file of readings
     Judge(JudgeArgs),
     /// Calibrate the meter from parts of known value
@@ -131,6 +133,25 @@ pub(super) struct PredictArgs {
     /// Marking of the part
     #[arg(required_unless_present = "capacitance", value_name = "MARKING")]
     pub(super) marking: Option<OsString>,
+}
+
+#[derive(Args, Debug)]
+pub(super) struct MarksArgs {
+    /// Tolerance that is to be marked: "5 %", "-20/+80 %", "±0.25 pF"
+    #[arg(long, value_name = "TOLERANCE", allow_hyphen_values = true)]
+    pub(super) tolerance: Option<String>,
+    /// Family or member, if it is known
+    #[arg(long, value_name = "FAMILY")]
+    pub(super) family: Option<String>,
+    /// Rated direct voltage that is to be marked: "100 V"
+    #[arg(long, value_name = "VOLTAGE")]
+    pub(super) voltage: Option<String>,
+    /// Write JSON
+    #[arg(long)]
+    pub(super) json: bool,
+    /// Capacitance of the part: "220 nF", 4n7
+    #[arg(value_name = "QUANTITY")]
+    pub(super) capacitance: String,
 }
 
 #[derive(Args, Debug)]

@@ -3,7 +3,7 @@
 //! ```text
 //! args      the command line            setup    profile, tray and log: which, where, read and checked
 //! bench     what the bench and `line` start with
-//! decode, predict, judge, calibrate, coverage, check, log    one file a command
+//! decode, predict, marks, judge, calibrate, coverage, check, log    one file a command
 //! columns, row, references              a CSV of readings: its header, its rows
 //! sheet, shapes, number, harmless       what is written: CSV and JSON tables, JSON objects, numbers, text of others
 //! failure                               why a command could not do its work, and the exit code
@@ -25,6 +25,7 @@ mod harmless;
 mod judge;
 mod line;
 mod log;
+mod marks;
 mod number;
 mod output;
 mod predict;
@@ -114,6 +115,7 @@ fn obey(line: CommandLine, streams: &mut Streams<'_>) -> Result<Finish, Failure>
         Some(Command::Line) => bench::lines(places, &line.bench, streams),
         Some(Command::Decode(args)) => decode::run(&args, streams),
         Some(Command::Predict(args)) => predict::run(&args, places, streams),
+        Some(Command::Marks(args)) => marks::run(&args, streams),
         Some(Command::Judge(args)) => judge::run(&args, places, streams),
         Some(Command::Calibrate(args)) => calibrate::run(&args, places, streams),
         Some(Command::Coverage(args)) => coverage::run(&args, places, streams),

@@ -182,3 +182,52 @@ fn predict() {
     "#]],
     );
 }
+
+#[test]
+fn marks_for_people_and_scripts() {
+    expect![[r#"
+        marking                       of a hundred  reads back    system
+        472J630                       29            first, 98 %   two figures and a power of ten, in pF (EIA-198)
+        2J472J                        16            first, 100 %  two figures and a power of ten, in pF (EIA-198)
+        472J630V                      13            first, 100 %  two figures and a power of ten, in pF (EIA-198)
+        4n7J630                       8             first, 99 %   n with figures: nF (IEC 60062)
+        .0047J630                     7             first, 99 %   below 1 with a point and no unit: µF
+        4700J630                      6             first, 73 %   a plain number of pF, as on older film, mica and ceramic parts
+        0.0047 µF ±5 % 630V           4             first, 100 %  the unit µF is printed
+        4700 pF ±5 % 630V             3             first, 99 %   the unit pF is printed
+        4n7J630V                      3             first, 100 %  n with figures: nF (IEC 60062)
+        .0047J630V                    3             first, 100 %  below 1 with a point and no unit: µF
+        4700J630V                     2             first, 70 %   a plain number of pF, as on older film, mica and ceramic parts
+        4.7 nF ±5 % 630V              2             first, 100 %  the unit nF is printed
+        4K7J630                       2             first, 98 %   K between figures: thousands of pF, nF
+        yellow violet red green blue  1             first, 100 %  five bands on polyester, away from the leads first
+        4K7J630V                      1             first, 98 %   K between figures: thousands of pF, nF
+        exit 0
+    "#]].assert_eq(&run(
+        &["marks", "4n7", "--tolerance", "5 %", "--voltage", "630 V"],
+        b"",
+    ));
+    expect![[r#"
+        {"capacitance_pF":1000.0,"tolerance":"±1 %","family":"mica","rated_voltage_V":null,"marks":[{"marking":"1000F","system":"a plain number of pF, as on older film, mica and ceramic parts","share":0.386597938144,"reads_back":0.681509035499,"rank":1},{"marking":"102F","system":"two figures and a power of ten, in pF (EIA-198)","share":0.322164948454,"reads_back":0.624933793072,"rank":1},{"marking":"1000 pF ±1 %","system":"the unit pF is printed","share":0.193298969072,"reads_back":0.991808240883,"rank":1},{"marking":"1 nF ±1 %","system":"the unit nF is printed","share":0.0386597938144,"reads_back":0.99954153163,"rank":1},{"marking":"black brown black black brown red","system":"moulded mica, six dots, upper row first","share":0.0386597938144,"reads_back":1.0,"rank":1},{"marking":"0.001 µF ±1 %","system":"the unit µF is printed","share":0.0128865979381,"reads_back":0.999982462686,"rank":1},{"marking":".001F","system":"below 1 with a point and no unit: µF","share":0.00773195876289,"reads_back":0.99878454963,"rank":1}]}
+        exit 0
+    "#]].assert_eq(&run(
+        &[
+            "marks",
+            "--json",
+            "1 nF",
+            "--family",
+            "mica",
+            "--tolerance",
+            "1 %",
+        ],
+        b"",
+    ));
+    expect![[r#"
+        ! 0 F is no capacitance of a part
+        exit 2
+    "#]].assert_eq(&run(&["marks", "0 F"], b""));
+    expect![[r#"
+        ! QUANTITY 4x7: found `x7` at position 2 while reading capacitance; accepted here: a prefix p n u µ m k M G, the unit F
+        exit 2
+    "#]].assert_eq(&run(&["marks", "4x7"], b""));
+}
