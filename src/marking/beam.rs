@@ -233,7 +233,10 @@ impl Search<'_, '_> {
             return;
         }
         path.weight *= piece.weight;
-        if let Some(reason) = self.lexicon.reason(piece.evidence) {
+        // What contradicts the rest says nothing of the kind of part.
+        let contradicts = path.slots.contradicts != from.slots.contradicts;
+        let evidence = Some(piece.evidence).filter(|_| !contradicts);
+        if let Some(reason) = evidence.and_then(|evidence| self.lexicon.reason(evidence)) {
             path.kinds
                 .iter_mut()
                 .zip(&reason.on)

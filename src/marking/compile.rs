@@ -19,10 +19,7 @@ pub(super) fn lexicon() -> Lexicon {
     let mut reasons = Reasons::of(ranking);
     let neutral = reasons.add([1.0; KINDS], String::new());
     let limits = reasons.add([1.0; KINDS], "the tolerance is written out".to_owned());
-    let climate_text = reasons.add(
-        [1.0; KINDS],
-        "a temperature or climatic category (IEC 60068-1)".to_owned(),
-    );
+    let climate_text = reasons.add([1.0; KINDS], "a climatic category (IEC 60068-1)".to_owned());
     let views = views(ranking);
     let (letter_index, letters) = letters(&mut reasons);
     let voltage_letters = voltage_letters(&mut reasons, named.voltage_letter);

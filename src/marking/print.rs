@@ -290,7 +290,7 @@ fn coded(
     wanted: &Wanted,
     found: &mut Vec<Printed>,
 ) {
-    let Some(volts) = wanted.voltage.map(|volts| volts.get()) else {
+    let Some(volts) = wanted.voltage.map(crate::quantity::Volt::get) else {
         push(found, tolerance.behind(value), notation, None, 1.0);
         return;
     };
@@ -340,7 +340,7 @@ fn touching(
     if TABLES.unit_words().any(is_unit) {
         return;
     }
-    match (wanted.voltage.map(|volts| volts.get()), tolerance) {
+    match (wanted.voltage.map(crate::quantity::Volt::get), tolerance) {
         (None, _) => push(found, text, notation, None, 1.0),
         (Some(volts), Suffix::Letter(_)) => {
             push(

@@ -21,7 +21,7 @@ pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mu
     };
     let sign_at = scan.after_blanks(figures.end);
     let mut push = |end, weight| {
-        pieces.push((at, end), Meaning::Text, lexicon.climate_text, weight);
+        pieces.push((at, end), Meaning::Text, lexicon.named.temperature, weight);
     };
     let celsius = |at: usize| scan.at(at) == b'C' && scan.sort(at + 1) != Sort::Letter;
     if scan.at(sign_at) == DEGREE {
@@ -34,7 +34,7 @@ pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mu
         );
     }
     if let Some(end) = climate(scan, at, lexicon) {
-        push(end, 1.0);
+        pieces.push((at, end), Meaning::Text, lexicon.climate_text, 1.0);
     }
 }
 

@@ -35,7 +35,11 @@ pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mu
             weight *= factors.unit_letter_runs_on;
         }
         if is_letter && figures.n_decimals > 0 && scan.at(word_at).is_ascii_uppercase() {
-            weight *= factors.unit_letter_decimal;
+            weight *= if figures.number() < 1.0 {
+                factors.unit_letter_decimal
+            } else {
+                factors.unit_letter_decimal_one
+            };
         }
         let unit = &entry.meaning;
         let amount = Amount::of(figures, unit.exponent).map(|amount| amount.in_units(unit.scale));

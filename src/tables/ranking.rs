@@ -131,6 +131,7 @@ factors!(
     tolerance_alone: "A tolerance letter with blanks around it.",
     tolerance_runs_on: "A tolerance letter with another behind it, or a capital before it.",
     unit_letter_decimal: "A capital for the unit behind figures with a point.",
+    unit_letter_decimal_one: "The same from 1 up.",
     four_figures: "A value of no series with more than three figures.",
     unit_letter_runs_on: "A unit of one letter with a digit right behind it.",
     unit_letter_apart: "A blank between the figures and a unit of one letter.",
