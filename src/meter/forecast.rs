@@ -1,7 +1,8 @@
 //! From a known part to the numbers that a person reads: the inverse of `estimate.rs`, for calibrating.
 //!
 //! A middle is that of the *visible* arc, the mean of its two edge readings, wherever the dial bends and a stop cuts. Where
-//! the lamp would not quite go dark both edges stand at the place that comes nearest to it, so that a fit may pass through.
+//! the lamp would not quite go dark both edges stand at the place that comes nearest to it, so that a fit may pass through;
+//! where there is none either (a part so large that it is as good as a short), at that of the textbook law R1·Cx = R2·C2.
 
 use super::Meter;
 use super::balance::DialLaw;
@@ -26,6 +27,8 @@ pub(super) struct Forecast<'a> {
     meter: &'a Meter,
     constants: &'a Constants,
     law: DialLaw,
+    /// Dial resistance of the textbook law, ohm.
+    textbook: f64,
 }
 
 impl<'a> Forecast<'a> {
@@ -34,19 +37,18 @@ impl<'a> Forecast<'a> {
             meter,
             constants,
             law: DialLaw::of(meter.model().circuit(), constants, load),
+            textbook: constants.r1 * load.c / constants.c2,
         }
     }
 
-    /// The number; not finite where the model gives none.
+    /// The number.
     pub(super) fn number(&self, kind: NumberRead) -> f64 {
         let dial = &self.meter.dial;
         if kind == NumberRead::Dimmest {
             let balance = self.law.best_balance(dial.span(self.constants));
             return dial.reading(balance.r, self.constants);
         }
-        let Some((low, high)) = self.edges() else {
-            return f64::NAN;
-        };
+        let (low, high) = self.edges();
         match kind {
             NumberRead::LowEdge => low,
             NumberRead::HighEdge => high,
@@ -62,13 +64,14 @@ impl<'a> Forecast<'a> {
     }
 
     /// The edges as printed numbers, wherever the stops are, smaller first.
-    fn edges(&self) -> Option<(f64, f64)> {
-        let (r1, r2) = self.law.edges_or_nearest(self.constants.vth)?;
+    fn edges(&self) -> (f64, f64) {
+        let free = self.law.edges_or_nearest(self.constants.vth);
+        let (r1, r2) = free.unwrap_or((self.textbook, self.textbook));
         let dial = &self.meter.dial;
         let (one, other) = (
             dial.reading(r1, self.constants),
             dial.reading(r2, self.constants),
         );
-        Some((one.min(other), one.max(other)))
+        (one.min(other), one.max(other))
     }
 }

@@ -1,10 +1,11 @@
 //! Calibrating: what comes out of readings of known parts, what is said of it, what is refused.
 
 use nulltray::meter::{
-    DialReading, Meter, NotCalibrated, NumberRead, ReferenceReading, Repeats, Seen, calibrate,
-    measure,
+    DialReading, Edge, Meter, NotCalibrated, NumberRead, ReferenceReading, Repeats, Seen,
+    calibrate, measure,
 };
 use nulltray::quantity::Farad;
+use proptest::prelude::*;
 
 use crate::truth::{Components, Random, Reader, Wiper, part, reading};
 
@@ -193,7 +194,7 @@ fn a_wrong_reference_is_flagged_and_the_robust_fit_says_what_it_pulled() {
         .expect("a calibration")
         .report;
     assert!(
-        sound.residuals.iter().all(|r| !r.is_outlier()),
+        sound.residuals.iter().all(|r| !r.is_outlier),
         "{:?}",
         sound.residuals
     );
@@ -499,4 +500,96 @@ fn both_edges_are_two_numbers_and_a_cut_arc_is_one() {
     assert!(open.clone().count() > 0 && open.into_iter().all(|r| r.leave_one_out.is_none()));
     let first: Vec<NumberRead> = of(2).map(|r| r.number).collect();
     assert_eq!(first, [NumberRead::LowEdge, NumberRead::HighEdge]);
+}
+
+#[test]
+fn a_component_known_exactly_stays_as_it_is_and_any_label_will_do() {
+    let mut components = Components::linear();
+    components.stray_tolerance = 0.0;
+    let profile = components
+        .profile()
+        .replace("label = \"B\"", "label = \"stray\"");
+    let (nominal, _) = Meter::read(&profile).expect("readable");
+    let rows = readings(&off(&Components::linear()).meter(), &mut Reader::Exact);
+    let found = calibrate(&nominal, &rows, DATE).expect("a calibration");
+    let stray = found
+        .report
+        .parameters
+        .iter()
+        .find(|p| p.name == "stray capacitance")
+        .expect("stray");
+    assert_eq!((stray.value, stray.standard_uncertainty), (17e-12, 0.0));
+    assert_eq!(found.report.open_terminals, None);
+    let written = found.calibration.written_into(&nominal, &profile);
+    let (read, warnings) = Meter::read(&written).expect("readable");
+    assert_eq!(warnings, []);
+    assert_eq!(read.calibration, Some(found.calibration));
+}
+
+proptest! {
+    #![proptest_config(ProptestConfig::with_cases(60))]
+
+    /// Whatever is read of whatever part: a calibration of finite numbers, or a reason.
+    #[test]
+    fn any_readings_calibrate_or_are_refused(
+        rows in prop::collection::vec(
+            (0usize..3, -15.0f64..1.0, 0.0f64..1.2, 0usize..4, 0.0f64..=100.0, 0.0f64..=100.0, 0u8..4),
+            0..7,
+        ),
+    ) {
+        let meter = Components::linear().meter();
+        let switches: Vec<_> = meter.switches().collect();
+        let at = |x: f64| Repeats::once(DialReading::new(x));
+        let rows: Vec<ReferenceReading> = rows
+            .into_iter()
+            .map(|(label, exponent, loss, switch, x, y, kind)| {
+                let seen = match kind {
+                    0 => Seen::Middle(at(x)),
+                    1 => Seen::Edges { from: Edge::At(at(x)), to: Edge::At(at(y)) },
+                    2 => Seen::Edges { from: Edge::At(at(x)), to: Edge::Stop },
+                    _ => Seen::NeverDark { dimmest: Some(DialReading::new(x)) },
+                };
+                let c = 10f64.powf(exponent);
+                ReferenceReading { loss, ..reading(["", "x", "y"][label], c, 0.01, switches[switch], seen) }
+            })
+            .collect();
+        match calibrate(&meter, &rows, DATE) {
+            Ok(found) => {
+                prop_assert!(found.report.chi_square.is_finite());
+                let profile = Components::linear().profile();
+                let written = found.calibration.written_into(&meter, &profile);
+                prop_assert!(Meter::read(&written).is_ok(), "{written}");
+            }
+            Err(refusal) => prop_assert!(!refusal.to_string().is_empty()),
+        }
+    }
+}
+
+/// A slip of a decade, or of the switch, in one row of a good set: found, not failed over.
+#[test]
+fn a_gross_mistake_is_named() {
+    let components = Components::linear();
+    let actual = off(&components).meter();
+    let good = readings(&actual, &mut Reader::Exact);
+    let wrong = good.iter().position(|r| r.label == "r4").expect("r4");
+    let named = |rows: &[ReferenceReading]| {
+        let report = match calibrate(&components.meter(), rows, DATE) {
+            Ok(found) => found.report,
+            Err(NotCalibrated::Contradictory(report)) => *report,
+            Err(other) => panic!("{other}"),
+        };
+        let contradiction = report.contradiction.expect("said");
+        report.residuals[contradiction.suspects[0]].row
+    };
+    for factor in [10.0, 0.1, 1000.0, 1e-3] {
+        let mut rows = good.clone();
+        rows[wrong].capacitance = rows[wrong].capacitance * factor;
+        rows[wrong].standard_uncertainty = rows[wrong].standard_uncertainty * factor;
+        assert_eq!(named(&rows), wrong, "a factor of {factor}");
+    }
+    for label in ["A", "C", "D"] {
+        let mut rows = good.clone();
+        rows[wrong].switch = actual.switch_named(label).expect("a switch");
+        assert_eq!(named(&rows), wrong, "switch {label}");
+    }
 }

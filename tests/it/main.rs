@@ -4,6 +4,7 @@ mod balance;
 mod calibrate;
 mod cli;
 mod coverage;
+mod derivatives;
 mod example;
 mod judge;
 mod killed;

@@ -4,9 +4,10 @@
 //! part. Only products and ratios of the constants can be observed (R1/C2, and the dial's resistances with them), so the
 //! priors keep the problem regular and what matters is the covariance of what is measured later; it is kept whole.
 //!
-//! `rows.rs` checks what was read, `unknowns.rs` says what is to be found, `problem.rs` solves, `report.rs` and `next_part.rs`
-//! judge the solution, `write.rs` puts it into the profile.
+//! `rows.rs` checks what was read, `unknowns.rs` says what is to be found, `problem.rs` solves, `report.rs`, `contradiction.rs` and
+//! `next_part.rs` judge the solution, `write.rs` puts it into the profile.
 
+mod contradiction;
 mod next_part;
 mod problem;
 mod report;
@@ -115,6 +116,9 @@ pub struct Residual {
     /// What the number would read too much if it had not been used, as a part of the capacitance; `None` for open terminals
     /// and where nothing else predicts it.
     pub leave_one_out: Option<Fraction>,
+    /// Whether it is one of few numbers without which the rest agrees; where the rest agrees as it is, whether it lies more
+    /// than three standard uncertainties off.
+    pub is_outlier: bool,
 }
 
 /// A reference part beside what the meter says of it when calibrated with the other parts only.
@@ -183,9 +187,10 @@ pub struct Contradiction {
     pub chi_square: f64,
     /// What it exceeds in one of a hundred sound calibrations.
     pub usually_below: f64,
-    /// The numbers to be read again, the worst first, as places among the residuals; without them the rest agrees, or
-    /// else nothing but the worst three are named.
+    /// The numbers to be read again, as places among the residuals, the worst row first.
     pub suspects: Vec<usize>,
+    /// Whether the rest agrees without them.
+    pub rest_agrees: bool,
     /// The constants that come out more than three standard uncertainties from what the profile says.
     pub far_from_profile: Vec<String>,
 }
@@ -206,17 +211,11 @@ pub enum NotCalibrated {
         /// The uncertainty of each switch.
         switches: Vec<SwitchGain>,
     },
-    /// The readings contradict each other or the profile, and no few of them can be blamed.
+    /// The readings contradict each other or the profile so far that one of ten thousand sound sets does; the report says
+    /// which to read again.
     Contradictory(Box<CalibrationReport>),
     /// The fit failed.
     Failed(Failure),
-}
-
-impl Residual {
-    /// Returns whether the number lies more than three standard uncertainties from what the others predict.
-    pub fn is_outlier(&self) -> bool {
-        report::FAR < self.standardised.abs()
-    }
 }
 
 impl PartCheck {
@@ -249,10 +248,16 @@ impl fmt::Display for NotCalibrated {
                     return Ok(());
                 };
                 write!(f, " (chi-square {:.1}, usually below {:.1})", found.chi_square, found.usually_below)?;
-                for (i, suspect) in found.suspects.iter().enumerate() {
-                    let residual = &report.residuals[*suspect];
-                    let before = if i == 0 { "; read again: row " } else { ", row " };
-                    write!(f, "{before}{} ({:+.1} standard uncertainties)", residual.row + 1, residual.standardised)?;
+                let mut rows: Vec<String> = Vec::new();
+                for suspect in &found.suspects {
+                    let row = (report.residuals[*suspect].row + 1).to_string();
+                    if !rows.contains(&row) {
+                        rows.push(row);
+                    }
+                }
+                write!(f, "; read again: row {}", rows.join(", row "))?;
+                if found.rest_agrees {
+                    f.write_str(", without which the rest agrees")?;
                 }
                 if !found.far_from_profile.is_empty() {
                     write!(f, "; far from the profile: {}", found.far_from_profile.join(", "))?;
@@ -269,7 +274,7 @@ impl fmt::Display for NotCalibrated {
 /// An earlier calibration of the meter is left aside: what was known before are the tolerances of its components.
 ///
 /// # Errors
-/// Rows with mistakes, sets that teach nothing, contradictions that no few readings explain: see [`NotCalibrated`].
+/// Rows with mistakes, sets that teach nothing, contradictions: see [`NotCalibrated`].
 pub fn calibrate(
     meter: &Meter,
     readings: &[ReferenceReading],

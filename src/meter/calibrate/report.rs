@@ -1,11 +1,12 @@
 //! What a solution is worth: residuals, parts left out, outliers, contradictions, gains.
 
+use super::contradiction::{QUANTILE_99, QUANTILE_99_99, chi_square_quantile, contradiction};
 use super::next_part::next_part;
 use super::problem::{Calibrating, Place};
 use super::unknowns::Constant;
 use super::{
-    CalibrationReport, Contradiction, NotCalibrated, Parameter, PartCheck, Residual, Robust,
-    RobustChange, SwitchGain,
+    CalibrationReport, NotCalibrated, Parameter, PartCheck, Residual, Robust, RobustChange,
+    SwitchGain,
 };
 use crate::meter::fit::{Failure, Solution};
 use crate::meter::model::{DIAL_END, STRAY};
@@ -22,10 +23,6 @@ const WORTH_STORING: f64 = 0.9;
 
 /// A constant whose standard uncertainty stays above this part of what it was has not been learnt about.
 const UNTOUCHED: f64 = 0.99;
-
-/// One-sided quantiles of the normal distribution at 99 and 99.99 % (ISO 3534-1; recomputed).
-const QUANTILE_99: f64 = 2.326_348;
-const QUANTILE_99_99: f64 = 3.719_016;
 
 pub(super) fn of(
     problem: &Calibrating<'_>,
@@ -54,22 +51,18 @@ pub(super) fn of(
     if solution.sum_of_squares <= chi_square_quantile(n_numbers, QUANTILE_99) {
         return Ok(report);
     }
-    let (contradiction, is_explained) =
-        contradiction(problem, solution).map_err(NotCalibrated::Failed)?;
+    let contradiction = contradiction(problem, solution, &places);
+    if contradiction.rest_agrees {
+        for (i, residual) in report.residuals.iter_mut().enumerate() {
+            residual.is_outlier = contradiction.suspects.contains(&i);
+        }
+    }
     report.contradiction = Some(contradiction);
-    if is_explained || solution.sum_of_squares <= chi_square_quantile(n_numbers, QUANTILE_99_99) {
+    if solution.sum_of_squares <= chi_square_quantile(n_numbers, QUANTILE_99_99) {
         Ok(report)
     } else {
         Err(NotCalibrated::Contradictory(Box::new(report)))
     }
-}
-
-/// The quantile of the chi-square distribution that belongs to a quantile of the normal one (Wilson and Hilferty 1931);
-/// within 1 % from one degree of freedom on.
-fn chi_square_quantile(n_free: usize, normal: f64) -> f64 {
-    let n = n_free as f64;
-    let step = 2.0 / (9.0 * n);
-    n * (1.0 - step + normal * step.sqrt()).powi(3)
 }
 
 /// What a constant is called.
@@ -195,17 +188,19 @@ fn residuals(problem: &Calibrating<'_>, solution: &Solution, places: &[Place]) -
             let label = row
                 .part
                 .map_or(String::new(), |part| problem.rows.parts[part].label.clone());
+            let standardised = if left > 1e-9 {
+                -residual / left.sqrt()
+            } else {
+                0.0
+            };
             Residual {
                 row: place.row,
                 label,
                 switch: row.switch,
                 number: number.kind,
                 divisions: -residual * number.u / problem.meter.dial.division,
-                standardised: if left > 1e-9 {
-                    -residual / left.sqrt()
-                } else {
-                    0.0
-                },
+                standardised,
+                is_outlier: FAR < standardised.abs(),
                 leave_one_out: row.part.filter(|_| left > 1e-9).and_then(|part| {
                     let slope = slope_of_part(problem, solution, i, part);
                     let left_out = -residual / left / slope;
@@ -305,76 +300,4 @@ fn robust(problem: &Calibrating<'_>, solution: &Solution) -> Result<Robust, Fail
         })
         .collect();
     Ok(Robust { doubted, changes })
-}
-
-/// Leaves out the worst number until the rest agrees, but never more than a quarter of all. Returns what was found and
-/// whether the rest agrees.
-fn contradiction(
-    problem: &Calibrating<'_>,
-    solution: &Solution,
-) -> Result<(Contradiction, bool), Failure> {
-    let n_numbers = solution.residuals.len();
-    let mut weights = vec![1.0; n_numbers];
-    let mut suspects = Vec::new();
-    let mut rest = solution.clone();
-    let is_explained = loop {
-        let n_left = n_numbers - suspects.len();
-        if rest.sum_of_squares <= chi_square_quantile(n_left, QUANTILE_99) {
-            break true;
-        }
-        let worst = ranked(&rest)
-            .into_iter()
-            .find(|i| !suspects.contains(i))
-            .filter(|_| 4 * (suspects.len() + 1) <= n_numbers);
-        let Some(worst) = worst else { break false };
-        suspects.push(worst);
-        weights[worst] = 0.0;
-        rest = problem.solve(rest.estimate, &weights)?;
-    };
-    if !is_explained {
-        suspects = ranked(solution);
-        suspects.truncate(3);
-    }
-    let constants = problem.unknowns.constants.iter();
-    let far_from_profile = constants
-        .filter(|c| c.learnt(solution).is_some_and(|(_, by)| FAR < by.abs()))
-        .map(|c| name_of(problem.meter, c).0)
-        .collect();
-    let found = Contradiction {
-        chi_square: solution.sum_of_squares,
-        usually_below: chi_square_quantile(n_numbers, QUANTILE_99),
-        suspects,
-        far_from_profile,
-    };
-    Ok((found, is_explained))
-}
-
-/// The numbers by their standardised residuals, the largest first.
-fn ranked(solution: &Solution) -> Vec<usize> {
-    let leverages = solution.leverages();
-    let size = |i: usize| solution.residuals[i].powi(2) / (1.0 - leverages[i]).max(1e-9);
-    let mut order: Vec<usize> = (0..leverages.len()).collect();
-    order.sort_by(|x, y| size(*y).total_cmp(&size(*x)));
-    order
-}
-
-#[cfg(test)]
-mod tests {
-    use super::*;
-
-    /// Upper 99 % points over their degrees of freedom, from the usual table.
-    #[test]
-    fn the_chi_square_quantile_is_good_to_one_percent() {
-        for (n, expected) in [
-            (1, 6.6349),
-            (2, 4.6052),
-            (3, 3.7816),
-            (5, 3.0173),
-            (10, 2.3209),
-            (50, 1.5231),
-        ] {
-            let found = chi_square_quantile(n, QUANTILE_99) / n as f64;
-            assert!((found / expected - 1.0).abs() < 0.01, "{n}: {found}");
-        }
-    }
 }
