@@ -190,7 +190,7 @@ fn write_residuals(
             format!("{:+.1}", r.standardised),
             r.leave_one_out
                 .map_or(String::new(), |left| format!("{:+.2} %", left.percent())),
-            if r.is_outlier() {
+            if r.is_outlier {
                 "! outlier".to_owned()
             } else {
                 String::new()

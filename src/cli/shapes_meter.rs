@@ -76,7 +76,7 @@ impl<'a> CalibrationShape<'a> {
                     divisions: rounded(r.divisions),
                     standardised: rounded(r.standardised),
                     leave_one_out_percent: r.leave_one_out.map(|left| rounded(left.percent())),
-                    outlier: r.is_outlier(),
+                    outlier: r.is_outlier,
                 })
                 .collect(),
             switches: report

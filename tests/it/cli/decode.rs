@@ -225,7 +225,8 @@ fn marks_for_people_and_scripts() {
     expect![[r#"
         ! 0 F is no capacitance of a part
         exit 2
-    "#]].assert_eq(&run(&["marks", "0 F"], b""));
+    "#]]
+    .assert_eq(&run(&["marks", "0 F"], b""));
     expect![[r#"
         ! QUANTITY 4x7: found `x7` at position 2 while reading capacitance; accepted here: a prefix p n u µ m k M G, the unit F
         exit 2
