@@ -62,11 +62,11 @@ pub enum Next {
 impl fmt::Display for Cause {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
         match self {
-            Self::Open => f.write_str("open, or not connected"),
+            Self::Open => f.write_str("an open part or no contact"),
             Self::Short => f.write_str("a short"),
-            Self::AboveSpan => f.write_str("larger than this switch reaches"),
-            Self::BelowSpan => f.write_str("smaller than this switch reaches"),
-            Self::TooLossy { .. } => f.write_str("too lossy: leaky, dried out or burnt"),
+            Self::AboveSpan => f.write_str("more than this switch reaches"),
+            Self::BelowSpan => f.write_str("less than this switch reaches"),
+            Self::TooLossy { .. } => f.write_str("too much loss (leaky, dried out, burnt)"),
             Self::LoadResidual { residual } => {
                 write!(
                     f,

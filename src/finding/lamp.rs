@@ -6,7 +6,7 @@
 
 use super::{Cause, Hypothesis, Next, Observation};
 use crate::meter::{
-    AssumedLoss, Cut, DialReading, Edge, Null, Part, Seen, Stop, Switch, Value, best_switch, null,
+    Cut, DialReading, Edge, Null, Part, Seen, Stop, Switch, Value, best_switch, null,
 };
 use crate::quantity::Farad;
 
@@ -44,24 +44,15 @@ pub fn lamp_says(observation: &Observation<'_>, part: Option<&Part>) -> Vec<Hypo
 /// Returns hypotheses as one sentence: the most likely cause, the next in line, and what to do.
 pub(super) fn in_words(hypotheses: &[Hypothesis]) -> Option<String> {
     let first = hypotheses.first()?;
-    let second = hypotheses
-        .get(1)
-        .map_or(String::new(), |second| format!(", or {}", second.cause));
-    Some(format!("{}{second}: {}", first.cause, first.next))
+    Some(match hypotheses.get(1) {
+        Some(second) => format!("{}, or {}; next: {}", first.cause, second.cause, first.next),
+        None => format!("{}: {}", first.cause, first.next),
+    })
 }
 
 /// A part without loss on the switch observed.
 fn looks(observation: &Observation<'_>, capacitance: f64) -> Null {
-    let part = Part {
-        capacitance: Farad::new(capacitance),
-        low: None,
-        high: None,
-        loss: AssumedLoss {
-            value: 0.0,
-            standard_uncertainty: 0.0,
-        },
-        family: None,
-    };
+    let part = Part::without_loss(Farad::new(capacitance));
     null(observation.meter, observation.switch, &part)
 }
 

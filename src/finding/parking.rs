@@ -32,7 +32,7 @@ pub struct Proof {
     pub word: Word,
     /// The probability of being inside.
     pub probability_inside: f64,
-    /// The interval that is proven, at two standard uncertainties: "between 209 nF and 224 nF".
+    /// What is proven, at two standard uncertainties: "between 209 nF and 224 nF".
     pub interval: String,
 }
 

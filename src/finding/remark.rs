@@ -78,13 +78,16 @@ fn limit(value: Farad) -> String {
     engineering(value.get(), Resolution::Digits(4), "F")
 }
 
-/// What a parked lamp proves, at two standard uncertainties.
+/// What a parked lamp proves, at two standard uncertainties. A lit lamp whose two edges are less than that apart proves
+/// nothing.
 pub(super) fn window(lamp: Lamp, low: Uncertain<Farad>, high: Option<Uncertain<Farad>>) -> String {
     let sign = if lamp == Lamp::Dark { -1.0 } else { 1.0 };
     let from = low.value + low.expanded() * sign;
     match (lamp, high.map(|high| high.value - high.expanded() * sign)) {
+        (Lamp::Dark, Some(to)) if from <= Farad::new(0.0) => format!("below {to}"),
         (Lamp::Dark, Some(to)) => format!("between {from} and {to}"),
         (Lamp::Dark, None) => format!("above {from}"),
+        (Lamp::Lit, Some(to)) if to <= from => "a lit lamp proves nothing here".to_owned(),
         (Lamp::Lit, Some(to)) => format!("not between {from} and {to}"),
         (Lamp::Lit, None) => format!("not above {from}"),
     }

@@ -7,9 +7,7 @@ use super::balance::{DialLaw, part_from_dimmest};
 use super::circuit::Load;
 use super::improve::{Improvement, improvements};
 use super::predict::uncertainty;
-use super::{
-    AssumedLoss, Cut, DialReading, Edge, Meter, Part, Repeats, Seen, Switch, measure, null,
-};
+use super::{Cut, DialReading, Edge, Meter, Part, Repeats, Seen, Switch, measure, null};
 use crate::quantity::{Farad, Fraction, Volt};
 
 /// Values looked at along each span, evenly by their logarithms.
@@ -127,16 +125,9 @@ pub(super) fn along((low, high): (f64, f64), n_values: usize) -> impl Iterator<I
 }
 
 fn part_of(capacitance: f64) -> Part {
-    Part {
-        capacitance: Farad::new(capacitance),
-        low: None,
-        high: None,
-        loss: AssumedLoss {
-            value: 0.0,
-            standard_uncertainty: LOSS_UNCERTAINTY,
-        },
-        family: None,
-    }
+    let mut part = Part::without_loss(Farad::new(capacitance));
+    part.loss.standard_uncertainty = LOSS_UNCERTAINTY;
+    part
 }
 
 pub(super) fn covered(meter: &Meter, switch: Switch, capacitance: f64) -> Covered {

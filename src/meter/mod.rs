@@ -10,6 +10,7 @@ mod circuit;
 mod coverage;
 mod dial;
 mod estimate;
+mod factored;
 pub mod fit;
 mod forecast;
 mod improve;

@@ -21,6 +21,22 @@ pub struct Part {
     pub family: Option<Family>,
 }
 
+impl Part {
+    /// Makes a part of which nothing but the capacitance is known, and that it has no loss.
+    pub fn without_loss(capacitance: Farad) -> Self {
+        Self {
+            capacitance,
+            low: None,
+            high: None,
+            loss: AssumedLoss {
+                value: 0.0,
+                standard_uncertainty: 0.0,
+            },
+            family: None,
+        }
+    }
+}
+
 /// A loss (tan δ, series form) that is assumed, and how far it is to be trusted.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct AssumedLoss {

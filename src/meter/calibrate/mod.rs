@@ -17,7 +17,7 @@ mod write;
 
 use std::fmt;
 
-use super::fit::Failure;
+use super::fit::{Failure, Solution};
 use super::model::Model;
 use super::{Calibration, Meter, NumberRead, Seen, Switch};
 use crate::quantity::{Farad, Fraction};
@@ -280,30 +280,16 @@ pub fn calibrate(
     readings: &[ReferenceReading],
     date: &str,
 ) -> Result<Calibrated, NotCalibrated> {
-    let meter = &meter.uncalibrated();
-    let rows = Rows::of(meter, readings).map_err(NotCalibrated::Rows)?;
-    let unknowns = Unknowns::of(meter, &rows);
-    let problem = Calibrating {
-        meter,
-        rows: &rows,
-        unknowns: &unknowns,
-    };
-    let solution = first_solution(&problem)?;
-    let report = report::of(&problem, &solution)?;
-    let calibration = Calibration {
-        date: date.to_owned(),
-        observations: u32::try_from(readings.len()).unwrap_or(u32::MAX),
-        reduced_chi_square: report.reduced_chi_square,
-        fit: unknowns.fit(&solution),
-    };
-    Ok(Calibrated {
-        calibration,
-        report,
+    with_solution(meter, readings, |problem, solution| {
+        Ok(Calibrated {
+            report: report::of(problem, solution)?,
+            calibration: problem.calibration(solution, date),
+        })
     })
 }
 
-/// Returns the meter as the readings calibrate it, without looking at how good the calibration is: for a chart or a
-/// simulation that calibrates often.
+/// Returns the meter as the readings calibrate it, without looking at how good the calibration is: for a simulation that
+/// calibrates often.
 ///
 /// # Errors
 /// Rows with mistakes, nothing read, a fit that fails.
@@ -311,41 +297,37 @@ pub fn calibrate_quickly(
     meter: &Meter,
     readings: &[ReferenceReading],
 ) -> Result<Meter, NotCalibrated> {
-    let meter = &meter.uncalibrated();
-    let rows = Rows::of(meter, readings).map_err(NotCalibrated::Rows)?;
-    let unknowns = Unknowns::of(meter, &rows);
-    let problem = Calibrating {
-        meter,
-        rows: &rows,
-        unknowns: &unknowns,
-    };
-    let solution = first_solution(&problem)?;
-    let n_numbers = solution.residuals.len().max(1);
-    Ok(meter.calibrated(Calibration {
-        date: String::new(),
-        observations: u32::try_from(readings.len()).unwrap_or(u32::MAX),
-        reduced_chi_square: solution.sum_of_squares / n_numbers as f64,
-        fit: unknowns.fit(&solution),
-    }))
+    with_solution(meter, readings, |problem, solution| {
+        Ok(problem.calibrated(solution))
+    })
 }
 
-fn first_solution(problem: &Calibrating<'_>) -> Result<super::fit::Solution, NotCalibrated> {
-    if problem.rows.rows.is_empty() {
+/// Reads the rows, solves, and hands both on.
+fn with_solution<T>(
+    meter: &Meter,
+    readings: &[ReferenceReading],
+    then: impl Fn(&Calibrating<'_>, &Solution) -> Result<T, NotCalibrated>,
+) -> Result<T, NotCalibrated> {
+    let meter = &meter.uncalibrated();
+    let rows = &Rows::of(meter, readings).map_err(NotCalibrated::Rows)?;
+    if rows.rows.is_empty() {
         return Err(NotCalibrated::NothingRead);
     }
-    if problem
-        .unknowns
-        .constants
-        .iter()
-        .all(|c| c.column().is_none())
-    {
+    let unknowns = &Unknowns::of(meter, rows);
+    if unknowns.constants.iter().all(|c| c.column().is_none()) {
         return Err(NotCalibrated::NothingToLearn);
     }
-    let start = vec![0.0; problem.unknowns.count()];
+    let problem = Calibrating {
+        meter,
+        rows,
+        unknowns,
+    };
+    let start = vec![0.0; unknowns.count()];
     let weights = vec![1.0; problem.places().len()];
-    problem
+    let solution = problem
         .solve(start, &weights)
-        .map_err(NotCalibrated::Failed)
+        .map_err(NotCalibrated::Failed)?;
+    then(&problem, &solution)
 }
 
 impl Meter {

@@ -7,7 +7,7 @@ use super::problem::Calibrating;
 use super::report::common_at_middle;
 use super::{NextPart, SwitchGain};
 use crate::meter::fit::Solution;
-use crate::meter::{AssumedLoss, Calibration, Cut, Meter, Part, Switch, null};
+use crate::meter::{Cut, Meter, Part, Switch, null};
 use crate::quantity::{Farad, Fraction};
 use crate::tables::{Series, TABLES};
 
@@ -28,12 +28,7 @@ pub(super) fn next_part(
     solution: &Solution,
     gains: &[SwitchGain],
 ) -> Option<NextPart> {
-    let meter = problem.meter.calibrated(Calibration {
-        date: String::new(),
-        observations: 0,
-        reduced_chi_square: 0.0,
-        fit: problem.unknowns.fit(solution),
-    });
+    let meter = problem.calibrated(solution);
     let at = &solution.estimate;
     // What the middle of the dial means moves by the slope of the middle read, turned round.
     let predictions: Vec<Vec<f64>> = gains
@@ -102,16 +97,7 @@ fn candidates(meter: &Meter) -> impl Iterator<Item = (Switch, f64)> {
                     .map(move |m| f64::from(*m) * 10f64.powi(decade - 2))
             })
             .filter(move |capacitance| {
-                let part = Part {
-                    capacitance: Farad::new(*capacitance),
-                    low: None,
-                    high: None,
-                    loss: AssumedLoss {
-                        value: 0.0,
-                        standard_uncertainty: 0.0,
-                    },
-                    family: None,
-                };
+                let part = Part::without_loss(Farad::new(*capacitance));
                 let found = null(meter, switch, &part);
                 found.beyond.is_none() && found.arc.is_some_and(|arc| arc.cut == Cut::Neither)
             })

@@ -5,7 +5,7 @@ use super::unknowns::Unknowns;
 use crate::meter::circuit::Load;
 use crate::meter::fit::{Failure, Problem, Solution, huber_weight, solve};
 use crate::meter::forecast::Forecast;
-use crate::meter::{Meter, NumberRead, Switch};
+use crate::meter::{Calibration, Meter, NumberRead, Switch};
 
 /// Step of the central differences, in standard uncertainties of what was known before: for relative uncertainties from
 /// 0.1 to 30 % truncation and rounding both stay below 1e-6 of a slope.
@@ -31,6 +31,22 @@ pub(super) struct Place {
 }
 
 impl Calibrating<'_> {
+    /// What is stored of a solution.
+    pub(super) fn calibration(&self, solution: &Solution, date: &str) -> Calibration {
+        let n_numbers = solution.residuals.len().max(1);
+        Calibration {
+            date: date.to_owned(),
+            observations: u32::try_from(self.rows.rows.len()).unwrap_or(u32::MAX),
+            reduced_chi_square: solution.sum_of_squares / n_numbers as f64,
+            fit: self.unknowns.fit(solution),
+        }
+    }
+
+    /// The meter as a solution calibrates it.
+    pub(super) fn calibrated(&self, solution: &Solution) -> Meter {
+        self.meter.calibrated(self.calibration(solution, ""))
+    }
+
     /// All numbers in their order.
     pub(super) fn places(&self) -> Vec<Place> {
         let rows = self.rows.rows.iter().enumerate();

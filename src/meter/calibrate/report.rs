@@ -10,9 +10,7 @@ use super::{
 };
 use crate::meter::fit::{Failure, Solution};
 use crate::meter::model::{DIAL_END, STRAY};
-use crate::meter::{
-    AssumedLoss, Calibration, DialReading, Meter, Part, Repeats, Seen, Switch, Taper, measure,
-};
+use crate::meter::{DialReading, Meter, Part, Repeats, Seen, Switch, Taper, measure};
 use crate::quantity::{Farad, Fraction};
 
 /// More standard uncertainties than a sound number strays (2.7 in 1000 do).
@@ -104,12 +102,7 @@ fn parameters(problem: &Calibrating<'_>, solution: &Solution) -> Vec<Parameter> 
 /// Common uncertainty at the middle of the dial by tolerances and by the solution. A switch that gives no value there is
 /// left out.
 fn gains(problem: &Calibrating<'_>, solution: &Solution) -> Vec<SwitchGain> {
-    let after = problem.meter.calibrated(Calibration {
-        date: String::new(),
-        observations: 0,
-        reduced_chi_square: 0.0,
-        fit: problem.unknowns.fit(solution),
-    });
+    let after = problem.calibrated(solution);
     problem
         .meter
         .switches()
@@ -126,16 +119,7 @@ fn gains(problem: &Calibrating<'_>, solution: &Solution) -> Vec<SwitchGain> {
 /// The capacitance that the middle of the dial means on a switch, and its common relative standard uncertainty.
 pub(super) fn common_at_middle(meter: &Meter, switch: Switch) -> Option<(Farad, Fraction)> {
     let middle = DialReading::new(0.5 * (meter.dial.low.get() + meter.dial.high.get()));
-    let part = Part {
-        capacitance: Farad::new(0.0),
-        low: None,
-        high: None,
-        loss: AssumedLoss {
-            value: 0.0,
-            standard_uncertainty: 0.0,
-        },
-        family: None,
-    };
+    let part = Part::without_loss(Farad::new(0.0));
     let seen = Seen::Middle(Repeats::once(middle));
     let found = measure(meter, switch, seen, &part).estimate()?;
     Some((
