@@ -14,7 +14,10 @@ const STEP: f64 = 2e-3;
 /// Step of a part's logarithm.
 const PART_STEP: f64 = 1e-4;
 
-const N_ROBUST_STEPS: usize = 12;
+/// Weights that change by less than this stand still: what a robust fit is asked for is what it would move, and how far.
+const STANDING_STILL: f64 = 0.02;
+
+const N_ROBUST_STEPS: usize = 8;
 
 #[derive(Clone, Copy)]
 pub(super) struct Calibrating<'a> {
@@ -160,7 +163,7 @@ impl Calibrating<'_> {
                 .zip(&weights)
                 .map(|(x, y)| (x - y).abs())
                 .fold(0.0, f64::max);
-            if change < 1e-3 {
+            if change < STANDING_STILL {
                 break;
             }
             weights = next;
