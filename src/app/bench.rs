@@ -1,5 +1,6 @@
 //! The loop at the bench: marking, dial, finding; and what may be said between.
 
+use super::describing;
 use super::earlier::add;
 use super::entry::{self, Prompt, Typed};
 use super::expecting::{choose_reading, choose_switch, refresh};
@@ -36,10 +37,7 @@ pub(super) fn submit(state: &mut State) -> Vec<Effect> {
             begin(state, Subject::Zero);
             Vec::new()
         }
-        Typed::NewMeter => refuse(
-            state,
-            "a profile is a text file: see `nulltray check FILE` and the README".to_owned(),
-        ),
+        Typed::NewMeter => describing::begin(state),
     }
 }
 

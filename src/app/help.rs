@@ -29,7 +29,7 @@ pub(super) fn rows_of(page: Page) -> ListView {
 }
 
 /// What can be typed, in the order of use.
-const ENTRIES: [(&str, &str); 17] = [
+const ENTRIES: [(&str, &str); 18] = [
     (
         "224J 2A",
         "a marking; ? stands for a character that cannot be read",
@@ -65,6 +65,10 @@ const ENTRIES: [(&str, &str); 17] = [
     ),
     ("check LABEL", "measure a known part instead"),
     ("zero", "measure the open terminals instead"),
+    (
+        "new meter",
+        "describe your own meter by question and answer",
+    ),
 ];
 
 #[cfg(test)]
@@ -73,7 +77,7 @@ mod tests {
 
     #[test]
     fn help_lists_every_key_of_the_screen() {
-        for page in Page::ALL {
+        for page in Page::ALL.into_iter().chain([Page::NewMeter]) {
             let rows = rows_of(page).rows;
             for binding in page.bindings() {
                 let key = binding.key.to_string();

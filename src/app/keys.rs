@@ -92,10 +92,12 @@ pub enum Page {
     Codes,
     /// The lot so far.
     Lot,
+    /// The questions about a new meter; typed, not on a key.
+    NewMeter,
 }
 
 impl Page {
-    /// All screens in the order of their keys: F1 … F6 and Alt-1 … Alt-6.
+    /// The screens that have keys, in the order of these: F1 … F6 and Alt-1 … Alt-6.
     pub const ALL: [Self; 6] = [
         Self::Help,
         Self::Bench,
@@ -114,6 +116,7 @@ impl Page {
             Self::Meter => "meter",
             Self::Codes => "codes",
             Self::Lot => "lot",
+            Self::NewMeter => "new meter",
         }
     }
 
@@ -122,6 +125,7 @@ impl Page {
         let own = match self {
             Self::Bench => BENCH,
             Self::Help => HELP,
+            Self::NewMeter => QUESTIONS,
             Self::Tray | Self::Meter | Self::Codes | Self::Lot => LIST,
         };
         own.iter().chain(EVERYWHERE)
@@ -173,6 +177,8 @@ pub enum Intent {
     RowsDown,
     /// Another order of the rows.
     Sort,
+    /// The question before.
+    QuestionBefore,
 }
 
 /// One key of a screen.
@@ -251,6 +257,25 @@ const HELP: &[Binding] = &[
     bind(Key::Esc, Intent::Back, "back to the bench"),
 ];
 
+/// Keys of the questions about a new meter.
+const QUESTIONS: &[Binding] = &[
+    bind(
+        Key::Enter,
+        Intent::Submit,
+        "take the answer; alone: the one that is offered",
+    ),
+    bind(
+        Key::Up,
+        Intent::QuestionBefore,
+        "the question before (typed: back)",
+    ),
+    bind(
+        Key::Esc,
+        Intent::Back,
+        "to the bench; the answers are kept (typed: leave)",
+    ),
+];
+
 /// Keys of every screen.
 const EVERYWHERE: &[Binding] = &[
     bind(
@@ -291,7 +316,7 @@ mod tests {
 
     #[test]
     fn no_screen_binds_a_key_twice() {
-        for page in Page::ALL {
+        for page in Page::ALL.into_iter().chain([Page::NewMeter]) {
             let mut seen = std::collections::HashSet::new();
             for binding in page.bindings() {
                 assert!(
@@ -307,7 +332,7 @@ mod tests {
 
     #[test]
     fn letters_always_go_to_the_prompt() {
-        for page in Page::ALL {
+        for page in Page::ALL.into_iter().chain([Page::NewMeter]) {
             for letter in (' '..='~').map(Key::Char) {
                 assert_eq!(page.intent(letter), None, "{letter} on {}", page.name());
             }

@@ -1,11 +1,14 @@
 //! What the screens show, what happens, and what is to be done about it.
 
+use std::path::PathBuf;
+
 use tui_input::Input;
 
 use super::Key;
 use super::entry::Prompt;
 use super::lists::ListView;
 use super::lot::Lot;
+use super::new_meter::{Draft, Interview, ProfileFailure};
 use super::sighting::Sighting;
 use super::work::Subject;
 use super::{Entry, LogFailure, Marked, Page, Record, RecordId, Setup};
@@ -36,6 +39,8 @@ pub struct State {
     pub size: Size,
     /// Whether the warning about high-voltage leakage tests was given: it is given once.
     pub leakage_warning: Warning,
+    /// The questions about a new meter, and the answers so far.
+    pub interview: Interview,
     /// Whether the program is to end.
     pub done: bool,
 }
@@ -131,6 +136,8 @@ pub enum Front {
     Lot(ListView),
     /// Help for the screen named.
     Help(Page, ListView),
+    /// The questions about a new meter.
+    NewMeter,
 }
 
 impl Front {
@@ -143,13 +150,14 @@ impl Front {
             Self::Codes(_) => Page::Codes,
             Self::Lot(_) => Page::Lot,
             Self::Help(..) => Page::Help,
+            Self::NewMeter => Page::NewMeter,
         }
     }
 
     /// Returns its list, if it has one.
     pub fn list(&self) -> Option<&ListView> {
         match self {
-            Self::Bench => None,
+            Self::Bench | Self::NewMeter => None,
             Self::Tray(list)
             | Self::Meter(list)
             | Self::Codes(list)
@@ -161,7 +169,7 @@ impl Front {
     /// Returns its list for changing, if it has one.
     pub(super) fn list_mut(&mut self) -> Option<&mut ListView> {
         match self {
-            Self::Bench => None,
+            Self::Bench | Self::NewMeter => None,
             Self::Tray(list)
             | Self::Meter(list)
             | Self::Codes(list)
@@ -317,6 +325,8 @@ pub enum Event {
     BroughtBack(Result<(Option<Box<Entry>>, Standing), LogFailure>),
     /// All entries of the log that stand, as asked for.
     Looked(Result<Vec<Entry>, LogFailure>),
+    /// The profile is on disk at this place, or is not.
+    ProfileWritten(Result<PathBuf, ProfileFailure>),
 }
 
 /// What stands in the log.
@@ -339,6 +349,8 @@ pub enum Effect {
     BringBack,
     /// Read all entries that stand; answered by [`Event::Looked`].
     Look,
+    /// Write a profile; answered by [`Event::ProfileWritten`].
+    WriteProfile(Box<Draft>),
     /// Ring, if that was asked for.
     Bell,
 }
@@ -350,6 +362,8 @@ pub struct Opening {
     pub setup: Setup,
     /// Whose meter it is.
     pub meter_from: MeterFrom,
+    /// Where the person's own profile is looked for, if that is known.
+    pub profile_place: Option<PathBuf>,
     /// How it is to look.
     pub look: Look,
     /// The name of the lot.

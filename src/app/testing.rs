@@ -3,13 +3,14 @@
 //! In a string of keys `↵` is Enter, `⇥` Tab, `⎋` Esc, `⌫` Backspace, `↑` and `↓` themselves, `^Z` Ctrl-Z, `①` … `⑥` the
 //! function keys; every other character is typed.
 
-use std::collections::VecDeque;
+use std::collections::{BTreeMap, VecDeque};
+use std::path::PathBuf;
 
 use chrono::DateTime;
 
 use super::{
-    Effect, Entry, Event, Key, LogFailure, Look, MeterFrom, Opening, Record, RecordId, Setup, Size,
-    Standing, State, open, update,
+    Draft, Effect, Entry, Event, Existing, Key, LogFailure, Look, MeterFrom, Opening,
+    ProfileFailure, Record, RecordId, Setup, Size, Standing, State, open, update,
 };
 use crate::meter::Meter;
 use crate::tables;
@@ -37,6 +38,10 @@ pub(super) struct Table {
     entries: Vec<Entry>,
     /// What the log says next instead of taking an entry.
     pub(super) failure: Option<LogFailure>,
+    /// The profiles that were written.
+    pub(super) profiles: BTreeMap<PathBuf, String>,
+    /// What is said next instead of writing a profile.
+    pub(super) profile_failure: Option<ProfileFailure>,
 }
 
 /// Returns the example meter with a small tray.
@@ -57,6 +62,7 @@ impl Table {
             state: open(Opening {
                 setup: setup(),
                 meter_from: MeterFrom::Profile,
+                profile_place: Some("/home/signal/meter.toml".into()),
                 look: Look::default(),
                 lot: "amplifier 7".to_owned(),
                 standing: Standing::default(),
@@ -68,6 +74,8 @@ impl Table {
             }),
             entries: Vec::new(),
             failure: None,
+            profiles: BTreeMap::new(),
+            profile_failure: None,
         }
     }
 
@@ -122,8 +130,20 @@ impl Table {
                 Some(Event::BroughtBack(Ok((entry, self.standing()))))
             }
             Effect::Look => Some(Event::Looked(Ok(self.entries.clone()))),
+            Effect::WriteProfile(draft) => Some(Event::ProfileWritten(self.write(*draft))),
             Effect::Bell => None,
         }
+    }
+
+    fn write(&mut self, draft: Draft) -> Result<PathBuf, ProfileFailure> {
+        if let Some(failure) = self.profile_failure.take() {
+            return Err(failure);
+        }
+        if draft.existing == Existing::Kept && self.profiles.contains_key(&draft.path) {
+            return Err(ProfileFailure::Exists);
+        }
+        self.profiles.insert(draft.path.clone(), draft.text);
+        Ok(draft.path)
     }
 
     fn append(&mut self, record: Record) -> Result<Entry, LogFailure> {
@@ -188,6 +208,7 @@ fn in_words(effect: &Effect) -> String {
         Effect::TakeBack => "take back".to_owned(),
         Effect::BringBack => "bring back".to_owned(),
         Effect::Look => "look".to_owned(),
+        Effect::WriteProfile(draft) => format!("write {}", draft.path.display()),
         Effect::Bell => "bell".to_owned(),
     }
 }

@@ -3,12 +3,13 @@
 use tui_input::{Input, InputRequest};
 
 use super::entry::Prompt;
+use super::new_meter::Interview;
 use super::pages;
 use super::state::{
     Bench, Effect, Event, Front, Last, Notice, Opening, Size, State, Tone, Warning,
 };
 use super::{Entry, Intent, Key, LogFailure, Lot, Page, Standing};
-use super::{bench, earlier, expecting, help};
+use super::{bench, describing, earlier, expecting, help};
 
 /// Makes the state the program starts with; Enter alone repeats the last marking of the lot.
 pub fn open(opening: Opening) -> State {
@@ -23,6 +24,7 @@ pub fn open(opening: Opening) -> State {
         notice: None,
         size: opening.size,
         leakage_warning: Warning::Due,
+        interview: Interview::new(opening.profile_place),
         done: false,
     };
     remember_last(&mut state);
@@ -47,6 +49,10 @@ fn remember_last(state: &mut State) {
 pub fn update(state: &mut State, event: Event) -> Vec<Effect> {
     match event {
         Event::Key(key) => press(state, key),
+        Event::Line(text) if matches!(state.front, Front::NewMeter) => {
+            state.interview.input = Input::new(text);
+            describing::submit(state)
+        }
         Event::Line(text) => {
             state.front = Front::Bench;
             *state.bench.line_mut() = Input::new(text);
@@ -78,6 +84,7 @@ pub fn update(state: &mut State, event: Event) -> Vec<Effect> {
             }
             Vec::new()
         }
+        Event::ProfileWritten(answer) => describing::written(state, answer),
         Event::Looked(Err(failure)) => {
             state.notice = Some(Notice::new(Tone::Failed, failure.to_string()));
             vec![Effect::Bell]
@@ -141,6 +148,9 @@ fn press(state: &mut State, key: Key) -> Vec<Effect> {
             list.refresh(height);
         }
         false
+    } else if matches!(state.front, Front::NewMeter) {
+        state.interview.input.handle(request);
+        false
     } else if state.bench.pending.is_some() {
         false
     } else {
@@ -181,11 +191,16 @@ fn act(state: &mut State, intent: Intent) -> Vec<Effect> {
         Intent::Show(page) => return show(state, page),
         Intent::Back => match state.front {
             Front::Bench => earlier::back(state),
+            Front::NewMeter => describing::leave(state),
             _ => state.front = Front::Bench,
         },
         Intent::Leave => state.done = true,
         Intent::ClearOrLeave => clear_or_leave(state),
+        Intent::Submit if matches!(state.front, Front::NewMeter) => {
+            return describing::submit(state);
+        }
         Intent::Submit => return bench::submit(state),
+        Intent::QuestionBefore => return describing::step_back(state),
         Intent::TakeBack => return vec![Effect::TakeBack],
         Intent::BringBack => return vec![Effect::BringBack],
         Intent::Earlier => earlier::recall(state, 1),
@@ -226,6 +241,10 @@ fn clear_or_leave(state: &mut State) {
         list.find.reset();
         list.refresh(height);
         is_empty
+    } else if matches!(state.front, Front::NewMeter) {
+        let is_empty = state.interview.input.value().is_empty();
+        state.interview.input.reset();
+        is_empty
     } else {
         let is_empty = state.bench.line().value().is_empty();
         state.bench.line_mut().reset();
@@ -245,6 +264,7 @@ fn show(state: &mut State, page: Page) -> Vec<Effect> {
     }
     state.front = match page {
         Page::Bench => Front::Bench,
+        Page::NewMeter => Front::NewMeter,
         Page::Tray => Front::Tray(pages::tray(state, &state.lot.entries)),
         Page::Meter => Front::Meter(pages::meter(state)),
         Page::Codes => Front::Codes(pages::codes(state)),

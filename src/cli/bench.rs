@@ -116,6 +116,7 @@ fn make_ready(
             setup::MeterFrom::BuiltIn => MeterFrom::Example,
             setup::MeterFrom::File(_) => MeterFrom::Profile,
         },
+        profile_place: setup::own_place("meter.toml"),
         log,
         lot,
         look: look_of_terminal(asked, units(options.units.unwrap_or_default())),

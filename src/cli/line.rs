@@ -7,8 +7,8 @@
 use std::io::{self, BufRead, Write};
 
 use crate::app::{
-    Event, MeterFrom, Prompt, Shown, State, Subject, Units, cautions, deviation, limits_in_force,
-    probability, went_to,
+    Event, Front, MeterFrom, Prompt, Shown, State, Subject, Units, cautions, deviation,
+    is_at_the_end, limits_in_force, probability, went_to,
 };
 use crate::marking::Reading;
 use crate::meter::Switch;
@@ -27,6 +27,7 @@ pub(super) fn run_line(
 ) -> io::Result<()> {
     greet(&state, talk)?;
     let mut line = Vec::new();
+    let mut question = None;
     loop {
         write!(talk, "{} ", prompt(&state))?;
         talk.flush()?;
@@ -41,6 +42,15 @@ pub(super) fn run_line(
             confirm(&state, id, output)?;
         }
         say_what_came(&state, before.as_ref(), settled.saved.is_some(), talk)?;
+        if is_asking(&state) {
+            let asked = asked(&state);
+            if question.as_ref() != Some(&asked) {
+                say_question(&state, &asked, talk)?;
+            }
+            question = Some(asked);
+        } else {
+            question = None;
+        }
     }
 }
 
@@ -76,8 +86,12 @@ fn greet(state: &State, talk: &mut dyn Write) -> io::Result<()> {
     )
 }
 
-/// Returns the prompt: `marking 12>`, `dial B 46.8>`.
+/// Returns the prompt: `marking 12>`, `dial B 46.8>`; of a new meter `resistance B 8>`.
 fn prompt(state: &State) -> String {
+    if is_asking(state) {
+        let interview = &state.interview;
+        return format!("{} {}>", interview.prompt(), interview.number());
+    }
     let bench = &state.bench;
     if bench.prompt == Prompt::Marking {
         return format!("marking {}>", state.lot.parts().count() + 1);
@@ -117,6 +131,36 @@ fn say_what_came(
         writeln!(talk, "{}", plain(&expected(state)))?;
     }
     Ok(())
+}
+
+/// Whether a new meter is asked about.
+fn is_asking(state: &State) -> bool {
+    matches!(state.front, Front::NewMeter)
+}
+
+/// A question with what is accepted and offered; said once, and again only when it changes.
+type Asked = (String, String, String);
+
+fn asked(state: &State) -> Asked {
+    let interview = &state.interview;
+    (interview.words(), interview.accepted(), interview.default())
+}
+
+fn say_question(state: &State, asked: &Asked, talk: &mut dyn Write) -> io::Result<()> {
+    if is_at_the_end(state) {
+        for line in state.interview.short() {
+            writeln!(talk, "{}", plain(&line))?;
+        }
+    }
+    let (words, accepted, offered) = asked;
+    let offered = if offered.is_empty() {
+        String::new()
+    } else {
+        format!("; Enter alone: {offered}")
+    };
+    writeln!(talk, "{}", plain(words))?;
+    writeln!(talk, "{}", plain(state.interview.question().good_for))?;
+    writeln!(talk, "{}", plain(&format!("accepted: {accepted}{offered}")))
 }
 
 /// What is between the terminals, on which switch.

@@ -218,11 +218,17 @@ fn example_meter() -> Result<(Meter, String, MeterFrom), Failure> {
 /// Returns the file of this name in the person's own folder, if there is anything of that name (even if it cannot be read:
 /// that is said, and not passed over).
 fn own_file(name: &str) -> Option<PathBuf> {
-    let path = Xdg::new().ok()?.config_dir().join("nulltray").join(name);
+    let path = own_place(name)?;
     match std::fs::symlink_metadata(&path) {
         Err(error) if is_absence(&error) => None,
         _ => Some(path),
     }
+}
+
+/// Returns where the file of this name is in the person's own folder, there or not; `None` if there is no home folder.
+pub(super) fn own_place(name: &str) -> Option<PathBuf> {
+    let folders = Xdg::new().ok()?;
+    Some(folders.config_dir().join("nulltray").join(name))
 }
 
 fn is_absence(error: &io::Error) -> bool {

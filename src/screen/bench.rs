@@ -107,10 +107,13 @@ pub(super) fn draw_footer(page: Page, sheet: &mut Sheet<'_>) {
     let mut x = 1;
     for binding in page.bindings() {
         let word = match (binding.intent, binding.key) {
+            (Intent::Show(Page::Bench), _) if page == Page::NewMeter => continue,
             (Intent::Show(other), Key::Function(_)) if other != page => other.name(),
             (Intent::TakeBack, _) => "undo",
             (Intent::Earlier, _) => "earlier",
             (Intent::Sort, _) => "sort",
+            (Intent::QuestionBefore, _) => "back",
+            (Intent::Back, _) if page == Page::NewMeter => "bench",
             (Intent::Leave, _) => "leave",
             _ => continue,
         };

@@ -14,6 +14,7 @@ mod dial_face;
 mod dots;
 mod list;
 mod narrow;
+mod new_meter;
 mod prompt;
 mod sheet;
 mod strip;
@@ -34,6 +35,9 @@ pub fn draw(state: &State, area: Rect, buffer: &mut Buffer) -> Option<Position> 
     let (width, height) = (sheet.width(), sheet.height());
     if width == 0 || height == 0 {
         return None;
+    }
+    if matches!(state.front, Front::NewMeter) {
+        return new_meter::draw(state, &mut sheet);
     }
     let is_small = width < 40 || height < 12;
     match (&state.front, state.front.list()) {

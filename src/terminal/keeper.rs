@@ -4,6 +4,7 @@ use std::collections::VecDeque;
 
 use chrono::{DateTime, FixedOffset, Local, SubsecRound};
 
+use super::profile_file;
 use crate::app::{self, Effect, Entry, Event, LogFailure, Record, RecordId, Standing, State};
 use crate::log::{Log, Which};
 
@@ -12,7 +13,6 @@ use crate::log::{Log, Which};
 pub struct Keeper {
     log: Log,
     lot: String,
-    profile_text: String,
 }
 
 /// What came of an event.
@@ -32,13 +32,9 @@ impl Settled {
 }
 
 impl Keeper {
-    /// Makes the keeper of a lot; `profile_text` is the whole text of the profile in force.
-    pub fn new(log: Log, lot: String, profile_text: String) -> Self {
-        Self {
-            log,
-            lot,
-            profile_text,
-        }
+    /// Makes the keeper of a lot.
+    pub fn new(log: Log, lot: String) -> Self {
+        Self { log, lot }
     }
 
     /// Takes in an event with all that follows from it, and returns when there is nothing left to do.
@@ -50,7 +46,7 @@ impl Keeper {
                 settled.saved = Some(entry.id);
             }
             for effect in app::update(state, event) {
-                match self.perform(effect) {
+                match self.perform(effect, &state.setup.profile_text) {
                     Some(answer) => queue.push_back(answer),
                     None => settled.n_bells += 1,
                 }
@@ -59,11 +55,14 @@ impl Keeper {
         settled
     }
 
-    /// Does what is asked for; returns the answer, `None` if all there is to do is to ring.
-    fn perform(&mut self, effect: Effect) -> Option<Event> {
+    /// Does what is asked for; returns the answer, `None` if all there is to do is to ring. `profile_text` is the whole
+    /// text of the profile in force.
+    fn perform(&mut self, effect: Effect, profile_text: &str) -> Option<Event> {
         let now = Local::now().fixed_offset().trunc_subsecs(3);
         Some(match effect {
-            Effect::Append(record) => Event::Logged(self.append(*record, now).map(Box::new)),
+            Effect::Append(record) => {
+                Event::Logged(self.append(*record, now, profile_text).map(Box::new))
+            }
             Effect::TakeBack => Event::TakenBack(
                 self.log
                     .void_last(&self.lot, now)
@@ -75,13 +74,19 @@ impl Keeper {
                     .and_then(|entry| Ok((entry.map(Box::new), self.standing()?))),
             ),
             Effect::Look => Event::Looked(self.log.entries(None, Which::Live)),
+            Effect::WriteProfile(draft) => Event::ProfileWritten(profile_file::write(&draft)),
             Effect::Bell => return None,
         })
     }
 
-    fn append(&mut self, record: Record, time: DateTime<FixedOffset>) -> Result<Entry, LogFailure> {
-        let id = self.log.append(&record, time, &self.profile_text)?;
-        let hash = crc32fast::hash(self.profile_text.as_bytes());
+    fn append(
+        &mut self,
+        record: Record,
+        time: DateTime<FixedOffset>,
+        profile_text: &str,
+    ) -> Result<Entry, LogFailure> {
+        let id = self.log.append(&record, time, profile_text)?;
+        let hash = crc32fast::hash(profile_text.as_bytes());
         Ok(Entry {
             id,
             time,

@@ -6,11 +6,13 @@
 mod keeper;
 mod keys;
 mod look;
+mod profile_file;
 mod watch;
 
 use std::fmt;
 use std::io::{self, IsTerminal, Write};
 use std::panic;
+use std::path::PathBuf;
 use std::sync::mpsc::Receiver;
 
 use crossterm::event::{self, DisableBracketedPaste, EnableBracketedPaste};
@@ -32,6 +34,8 @@ pub struct Options {
     pub setup: Setup,
     /// Whose meter it is.
     pub meter_from: MeterFrom,
+    /// Where the person's own profile is looked for, if that is known.
+    pub profile_place: Option<PathBuf>,
     /// The log, open for writing.
     pub log: Log,
     /// The name of the lot.
@@ -93,11 +97,11 @@ impl Options {
     /// # Errors
     /// If the log cannot be read.
     pub fn begin(self, size: Size) -> Result<(State, Keeper), app::LogFailure> {
-        let profile_text = self.setup.profile_text.clone();
-        let keeper = Keeper::new(self.log, self.lot.clone(), profile_text);
+        let keeper = Keeper::new(self.log, self.lot.clone());
         let state = app::open(Opening {
             setup: self.setup,
             meter_from: self.meter_from,
+            profile_place: self.profile_place,
             look: self.look,
             lot: self.lot,
             standing: keeper.standing()?,

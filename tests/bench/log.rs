@@ -169,6 +169,7 @@ fn start_to_first_frame(bencher: Bencher, n: usize) {
         let options = Options {
             setup,
             meter_from: MeterFrom::Example,
+            profile_place: None,
             log,
             lot: lot.clone(),
             look: Look::default(),

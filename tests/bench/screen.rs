@@ -26,6 +26,7 @@ fn bench_at_a_marking() -> State {
             tray: None,
         },
         meter_from: MeterFrom::Example,
+        profile_place: None,
         look: Look::default(),
         lot: "amplifier 7".to_owned(),
         standing: Standing::default(),

@@ -9,6 +9,7 @@ mod decode;
 mod judge;
 mod log;
 mod meter;
+mod new_meter;
 
 use std::fs;
 use std::io::Write;
@@ -59,6 +60,16 @@ fn marked(text: &str) -> String {
 )]
 fn check(arguments: &[&str], input: &str, expected: Expect) {
     expected.assert_eq(&run(arguments, input.as_bytes()));
+}
+
+/// Compares what was shown.
+#[track_caller]
+#[expect(
+    clippy::needless_pass_by_value,
+    reason = "reads as a literal at the call"
+)]
+fn check_shown(shown: &str, expected: Expect) {
+    expected.assert_eq(shown);
 }
 
 /// A folder for one test, removed at its end.

@@ -106,6 +106,29 @@ fn help() {
 }
 
 #[test]
+fn new_meter() {
+    let table = a_lot().keys("new meter↵hut meter↵2 kHz↵↵2↵↵330↵0,5↵");
+    check_screen("new-meter", &table.state);
+}
+
+#[test]
+fn new_meter_refusing_an_answer() {
+    check_screen("new-meter-refused", &a_lot().keys("new meter↵↵1 kV↵").state);
+}
+
+#[test]
+fn new_meter_measured() {
+    let table = a_lot().keys("new meter↵↵↵↵1↵↵↵↵↵↵↵↵↵↵yes↵0 22↵50 2,37k↵");
+    check_screen("new-meter-points", &table.state);
+}
+
+#[test]
+fn new_meter_before_it_is_written() {
+    let keys = format!("new meter↵{}", "↵".repeat(35));
+    check_screen("new-meter-end", &a_lot().keys(&keys).state);
+}
+
+#[test]
 fn bench_in_ascii() {
     let mut table = a_lot().keys("↵");
     table.state.look.glyphs = Glyphs::Ascii;
@@ -132,7 +155,19 @@ fn units_are_those_asked_for() {
 
 #[test]
 fn every_size_draws() {
-    let pages = ["", "22", "↵", "↵2.03↵", "③", "④", "⑤", "⑥", "①"];
+    let pages = [
+        "",
+        "22",
+        "↵",
+        "↵2.03↵",
+        "③",
+        "④",
+        "⑤",
+        "⑥",
+        "①",
+        "new meter↵",
+        "new meter↵↵1 kV↵",
+    ];
     for keys in pages {
         let state = a_lot().keys(keys).state;
         for width in (0..=130).step_by(if keys.is_empty() { 1 } else { 7 }) {

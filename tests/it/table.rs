@@ -33,6 +33,7 @@ impl Table {
                 tray: Some(tray),
             },
             meter_from: MeterFrom::Profile,
+            profile_place: Some("/home/signal/.config/nulltray/meter.toml".into()),
             look: Look::default(),
             lot: "amplifier 7".to_owned(),
             standing: Standing::default(),
