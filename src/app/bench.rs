@@ -1,11 +1,12 @@
 //! The loop at the bench: marking, dial, finding; and what may be said between.
 
+use super::cautions::SAME_SIDE;
 use super::describing;
 use super::earlier::add;
 use super::entry::{self, Prompt, Typed};
 use super::expecting::{choose_reading, choose_switch, refresh};
 use super::sighting::Sighting;
-use super::state::{Effect, Last, Notice, Pending, Purpose, Question, Shown, State, Tone};
+use super::state::{Effect, Last, Notice, Pending, Purpose, Question, Shown, State, Tone, Warning};
 use super::work::{Judgement, Subject, Work};
 use super::{Entry, LogFailure, Marked, Record, RecordId, RecordKind};
 use crate::finding::{ReadingCertainty, Word};
@@ -233,6 +234,7 @@ pub(super) fn logged(state: &mut State, answer: Result<Box<Entry>, LogFailure>) 
             refresh(state);
         }
     }
+    advise_same_side(state);
     remind_of_check(state);
     Vec::new()
 }
@@ -248,6 +250,20 @@ pub(super) fn start_over(state: &mut State) {
     bench.switch = None;
     bench.subject = Subject::Part(Marked::default());
     refresh(state);
+}
+
+/// Says once how to turn to a reading, when both edges or repeats are used for the first time.
+fn advise_same_side(state: &mut State) {
+    let raw = state.bench.shown.as_ref().map(|shown| &shown.record.raw);
+    let is_repeated = raw.is_some_and(|raw| {
+        let figures = [&raw.dial, &raw.dark_from, &raw.dark_to];
+        raw.dark_from.is_some() || figures.into_iter().flatten().any(|text| text.contains('/'))
+    });
+    let scatters = state.setup.meter.repeatability > 0.0;
+    if is_repeated && scatters && state.same_side == Warning::Due && state.notice.is_none() {
+        state.same_side = Warning::Given;
+        state.notice = Some(Notice::new(Tone::Said, SAME_SIDE));
+    }
 }
 
 fn remind_of_check(state: &mut State) {
@@ -438,5 +454,26 @@ mod tests {
             "{}",
             table.notice()
         );
+    }
+
+    #[test]
+    fn the_same_side_is_spoken_of_once() {
+        let mut table = Table::new();
+        table.keys("224J↵20.3↵");
+        assert_eq!(table.notice(), "");
+        table.keys("↵20.0/20.3/20.2↵");
+        assert_eq!(table.notice(), SAME_SIDE);
+        table.keys("↵19.6-20.8↵");
+        assert_eq!(
+            table.notice(),
+            "3 parts since the check part: check blue 10 nF"
+        );
+        let mut table = Table::new();
+        table.state.setup.meter.repeatability = 0.0;
+        table.keys("224J↵19.6 20.8↵");
+        assert_eq!(table.notice(), "");
+        table.state.setup.meter.repeatability = 0.3;
+        table.keys("↵19.6 20.8↵");
+        assert_eq!(table.notice(), SAME_SIDE);
     }
 }

@@ -5,7 +5,7 @@ use crate::finding::limits;
 use crate::quantity::{Farad, Resolution, Volt, engineering};
 
 /// The cautions of the Help screen, most important first.
-pub const GENERAL: [&str; 8] = [
+pub const GENERAL: [&str; 9] = [
     "Discharge every part before you touch it, and once more before it goes to the meter.",
     "Take the part out of its circuit: what is connected beside it is measured with it, and may feed the meter.",
     "Polarised parts see the meter's alternating voltage without bias: heed \"do not connect\".",
@@ -14,7 +14,11 @@ pub const GENERAL: [&str; 8] = [
     "A null is no test of leakage, and a good value says nothing about insulation.",
     "Leakage tests above 60 V dc are for trained people with a guarded supply; local rules first.",
     "Local codes come first, and so does a licensed practitioner wherever they ask for one.",
+    SAME_SIDE,
 ];
+
+/// What play in the drive of a dial asks for (common practice, no source).
+pub const SAME_SIDE: &str = "Come to every reading from the same side, edges too: play in the dial's drive shifts them (common practice, no source).";
 
 /// Returns what to know about the part in hand, most urgent first.
 pub fn cautions(state: &State) -> Vec<String> {

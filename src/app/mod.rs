@@ -29,7 +29,7 @@ mod work;
 
 pub use crate::finding::Circumstances;
 pub use assess::{Assessment, Marked, Setup, assess, compartment, outcome, predict_marked};
-pub use cautions::{GENERAL, cautions, limits_in_force};
+pub use cautions::{GENERAL, SAME_SIDE, cautions, limits_in_force};
 pub use describing::is_at_the_end;
 pub use entry::{Addition, Prompt, Typed, read as read_entry};
 pub use figures::{deviation, probability, uncertain};

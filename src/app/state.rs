@@ -39,6 +39,8 @@ pub struct State {
     pub size: Size,
     /// Whether the warning about high-voltage leakage tests was given: it is given once.
     pub leakage_warning: Warning,
+    /// Whether it was said that readings are reached from the same side: it is said once.
+    pub same_side: Warning,
     /// The questions about a new meter, and the answers so far.
     pub interview: Interview,
     /// Whether the program is to end.

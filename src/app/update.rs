@@ -24,6 +24,7 @@ pub fn open(opening: Opening) -> State {
         notice: None,
         size: opening.size,
         leakage_warning: Warning::Due,
+        same_side: Warning::Due,
         interview: Interview::new(opening.profile_place),
         done: false,
     };
