@@ -112,6 +112,7 @@ fn put_in_force(state: &mut State, text: String, path: &std::path::Path) {
     state.setup.meter = meter;
     state.setup.profile_text = text;
     state.meter_from = MeterFrom::Profile;
+    state.earlier_meter = state.lot.entries.iter().map(|entry| entry.id).max();
     // Positions of the switch are those of the meter before.
     if let Some(last) = &mut state.bench.last {
         last.switch = None;
@@ -163,6 +164,21 @@ mod tests {
             ["append 224J A 20.3: undecided no place"],
             "the bench goes on with the new meter"
         );
+        assert_eq!(table.keys("note dusty↵").len(), 1);
+    }
+
+    #[test]
+    fn parts_of_the_meter_before_are_not_judged_anew_in_passing() {
+        let mut table = Table::new();
+        table.keys("224J↵20.3↵");
+        at_the_place(&mut table);
+        table.keys("↵");
+        assert_eq!(table.keys("note dusty↵"), ["bell"]);
+        assert_eq!(
+            table.notice(),
+            "the last part was read on another meter: judge it again first"
+        );
+        assert_eq!(table.parts(), ["224J inside A1"]);
     }
 
     #[test]

@@ -28,7 +28,9 @@ pub(super) fn add(state: &mut State, addition: Addition) -> Vec<Effect> {
             "there is no part yet that this could belong to".to_owned(),
         );
     };
-    let Some(mut work) = Work::of(&target.record, &state.setup) else {
+    let is_of_this_meter = state.earlier_meter.is_none_or(|last| last < target.id);
+    let work = Work::of(&target.record, &state.setup).filter(|_| is_of_this_meter);
+    let Some(mut work) = work else {
         return refuse(
             state,
             "the last part was read on another meter: judge it again first".to_owned(),

@@ -43,6 +43,8 @@ pub struct State {
     pub same_side: Warning,
     /// The questions about a new meter, and the answers so far.
     pub interview: Interview,
+    /// Entries up to this one were read on a meter that is no longer in force.
+    pub earlier_meter: Option<RecordId>,
     /// Whether the program is to end.
     pub done: bool,
 }

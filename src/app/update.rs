@@ -26,6 +26,7 @@ pub fn open(opening: Opening) -> State {
         leakage_warning: Warning::Due,
         same_side: Warning::Due,
         interview: Interview::new(opening.profile_place),
+        earlier_meter: None,
         done: false,
     };
     remember_last(&mut state);
