@@ -16,6 +16,8 @@ use crate::tables::{Factors, Family, TABLES};
 const WIDTH: usize = 16;
 /// Paths that are this much less probable than the best of their cell, of those with or without a value, end there.
 const HOPELESS: f64 = 3e-5;
+/// The same at the end of the text, where nothing can come to their help but a better value.
+const LATE: f64 = 5e-4;
 
 #[derive(Clone, Copy)]
 struct Step {
@@ -46,9 +48,9 @@ pub(super) fn search<'a, 't>(
         scan,
         lexicon,
         factors: &TABLES.ranking.factors,
-        paths: Vec::with_capacity(64),
+        paths: Vec::with_capacity(48),
         heads: [START; MOST_CELLS + 1],
-        steps: Vec::with_capacity(64),
+        steps: Vec::with_capacity(48),
     };
     let mut pieces = Pieces {
         list: Vec::with_capacity(64),
@@ -57,7 +59,7 @@ pub(super) fn search<'a, 't>(
     search.add(scan.after_blanks(0), Path::first(lexicon, given));
     let mut live: Vec<u32> = Vec::with_capacity(WIDTH);
     for cell in 0..scan.len() {
-        search.best_at(cell, &mut live);
+        search.best_at(cell, &mut live, HOPELESS);
         if live.is_empty() {
             continue;
         }
@@ -82,7 +84,7 @@ pub(super) fn search<'a, 't>(
             }
         }
     }
-    search.best_at(scan.len(), &mut live);
+    search.best_at(scan.len(), &mut live, LATE);
     let finished = live
         .iter()
         .filter_map(|&path| search.paths.get(index(path)).copied())
@@ -173,7 +175,7 @@ impl Search<'_, '_> {
     }
 
     /// Lists the best paths of a cell.
-    fn best_at(&self, cell: usize, live: &mut Vec<u32>) {
+    fn best_at(&self, cell: usize, live: &mut Vec<u32>, hopeless: f64) {
         live.clear();
         // Paths with and without a value are not measured against each other: the value may still come.
         let mut best = [0.0f64; 2];
@@ -186,7 +188,7 @@ impl Search<'_, '_> {
         }
         let mass = |path: u32| self.paths.get(index(path)).map_or(0.0, |path| path.mass);
         let is_hopeful =
-            |path: &Path| path.mass >= HOPELESS * best[usize::from(path.slots.value == NONE)];
+            |path: &Path| path.mass >= hopeless * best[usize::from(path.slots.value == NONE)];
         live.retain(|&path| self.paths.get(index(path)).is_some_and(is_hopeful));
         if live.len() > WIDTH {
             live.select_nth_unstable_by(WIDTH, |&a, &b| mass(b).total_cmp(&mass(a)));

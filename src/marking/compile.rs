@@ -170,7 +170,7 @@ fn voltage_codes(evidence: u16) -> ByFirst<Volts> {
             };
             if digit == 0 {
                 // The letter O is printed for the zero now and then.
-                let share = TABLES.ranking.factors.date_other_order;
+                let share = TABLES.ranking.factors.letter_for_zero;
                 codes.push((format!("O{}", row.letter), Volts { share, ..volts }));
             }
             codes.push((format!("{digit}{}", row.letter), volts));

@@ -1,7 +1,7 @@
 //! From the tables to codes that are put together: characteristics, dates, chip and military codes, text.
 
 use super::compile::{Reasons, Words, kinds_of, said};
-use super::lexicon::{ByFirst, ByKind, Named, NamedEvidence, View};
+use super::lexicon::{ByFirst, ByGlyph, ByKind, Named, NamedEvidence, View};
 use super::scan::glyph;
 use crate::quantity::{Farad, Tolerance, parse};
 use crate::tables::{
@@ -14,16 +14,18 @@ use std::collections::HashMap;
 pub(super) struct Codes {
     /// Characteristics of three characters, or of two with a blank behind: rows of the words.
     pub(super) characteristics: HashMap<[u8; 3], u16>,
+    /// Their first characters.
+    pub(super) characteristic_starts: ByGlyph<()>,
     /// One letter behind a tolerance letter (IEC 60384-8): rows of the words.
-    pub(super) coefficients: HashMap<u8, u16>,
+    pub(super) coefficients: ByGlyph<u16>,
     /// The tolerance letters of old British parts, with their evidence.
-    pub(super) british_tolerances: HashMap<u8, (Tolerance, u16)>,
+    pub(super) british_tolerances: ByGlyph<(Tolerance, u16)>,
     /// The coefficients of old British parts: rows of the words.
-    pub(super) british_coefficients: HashMap<u8, u16>,
+    pub(super) british_coefficients: ByGlyph<u16>,
     /// Years by their letter.
-    pub(super) years: HashMap<u8, u16>,
+    pub(super) years: ByGlyph<u16>,
     /// Months by one character.
-    pub(super) months: HashMap<u8, u8>,
+    pub(super) months: ByGlyph<u8>,
     /// Months in Roman figures.
     pub(super) roman_months: ByFirst<u8>,
     /// Text, with its evidence.
@@ -31,7 +33,7 @@ pub(super) struct Codes {
     /// Climatic categories of three letters, with their evidence.
     pub(super) climates: HashMap<[u8; 3], u16>,
     /// Mantissas of chip parts in tenths.
-    pub(super) chip_mantissas: HashMap<u8, u32>,
+    pub(super) chip_mantissas: ByGlyph<u32>,
     /// Styles of military part numbers.
     pub(super) styles: ByFirst<Style>,
     /// Marks of military part numbers.
@@ -39,7 +41,7 @@ pub(super) struct Codes {
     /// Rated voltages by style with its size and by value, rising.
     pub(super) by_value: Vec<ByValue>,
     /// Rated voltages by letter on Soviet parts.
-    pub(super) soviet_volts: HashMap<u8, (f64, u16)>,
+    pub(super) soviet_volts: ByGlyph<(f64, u16)>,
     /// Text of a maker.
     pub(super) lot: u16,
     /// A maker's mark before a chip code.
@@ -101,6 +103,7 @@ pub(super) fn codes(
     let neutral = [1.0; KINDS];
     let reasons = making.reasons;
     Codes {
+        characteristic_starts: characteristics.keys().map(|key| (key[0], ())).collect(),
         characteristics,
         coefficients,
         british_tolerances,
@@ -174,8 +177,8 @@ fn characteristic_words(making: &mut Making<'_>) -> HashMap<[u8; 3], u16> {
 fn characteristic_codes(
     making: &mut Making<'_>,
     codes: &mut HashMap<[u8; 3], u16>,
-) -> HashMap<u8, u16> {
-    let mut coefficients = HashMap::new();
+) -> ByGlyph<u16> {
+    let mut coefficients = Vec::new();
     for (system, marks) in systems() {
         let at = |place: u8| {
             marks
@@ -189,7 +192,7 @@ fn characteristic_codes(
             if is_pair {
                 let name = first.mark.to_string();
                 let place = making.word(&name, &first.says, &kinds, Stands::Anywhere);
-                coefficients.insert(glyph(first.mark), place);
+                coefficients.push((glyph(first.mark), place));
             }
             for second in at(2) {
                 let thirds: Vec<Option<&CharacteristicMark>> = if is_pair {
@@ -213,7 +216,7 @@ fn characteristic_codes(
             }
         }
     }
-    coefficients
+    coefficients.into_iter().collect()
 }
 
 struct Making<'a> {
@@ -274,11 +277,11 @@ fn limits(making: &mut Making<'_>, codes: &mut HashMap<[u8; 3], u16>) {
     }
 }
 
-type British = (HashMap<u8, (Tolerance, u16)>, HashMap<u8, u16>);
+type British = (ByGlyph<(Tolerance, u16)>, ByGlyph<u16>);
 
 fn british(making: &mut Making<'_>) -> British {
-    let mut tolerances = HashMap::new();
-    let mut coefficients = HashMap::new();
+    let mut tolerances = Vec::new();
+    let mut coefficients = Vec::new();
     let class1 = ["class1".to_owned()];
     for row in TABLES.british_letters() {
         match row.place {
@@ -286,18 +289,21 @@ fn british(making: &mut Making<'_>) -> British {
                 let why = said("old British tolerance letter for", row);
                 let evidence = making.reasons.add([1.0; KINDS], why);
                 if let Ok(limits) = Tolerance::parse(&row.says) {
-                    tolerances.insert(glyph(row.letter), (limits, evidence));
+                    tolerances.push((glyph(row.letter), (limits, evidence)));
                 }
             }
             BritishPlace::Coefficient => {
                 let name = row.says.clone();
                 let says = format!("{} on old British parts", row.says);
                 let place = making.word(&name, &says, &class1, Stands::Anywhere);
-                coefficients.insert(glyph(row.letter), place);
+                coefficients.push((glyph(row.letter), place));
             }
         }
     }
-    (tolerances, coefficients)
+    (
+        tolerances.into_iter().collect(),
+        coefficients.into_iter().collect(),
+    )
 }
 
 fn styles(making: &mut Making<'_>) -> ByFirst<Style> {

@@ -22,6 +22,8 @@ pub(super) struct Colours {
     pub(super) systems: Vec<System>,
     /// The colour of a band that is not there.
     pub(super) none: u8,
+    /// The column of coloured tips.
+    pub(super) tip: u8,
     /// The word for a wide band.
     pub(super) wide: u8,
     /// Words between bands.
@@ -117,6 +119,7 @@ pub(super) fn colours(
         says,
         systems,
         none: place(&names, "none"),
+        tip: place(&columns, "tip"),
         wide: place(&names, "wide"),
         between: place(&names, "between the bands"),
     }

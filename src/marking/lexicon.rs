@@ -20,6 +20,28 @@ pub(super) struct ByFirst<T> {
     starts: Vec<u16>,
 }
 
+/// Meanings of single glyphs.
+pub(super) struct ByGlyph<T>(Vec<Option<T>>);
+
+impl<T> ByGlyph<T> {
+    /// Returns what a glyph means.
+    pub(super) fn get(&self, glyph: u8) -> Option<&T> {
+        self.0.get(usize::from(glyph))?.as_ref()
+    }
+}
+
+impl<T> FromIterator<(u8, T)> for ByGlyph<T> {
+    fn from_iter<I: IntoIterator<Item = (u8, T)>>(rows: I) -> Self {
+        let mut all: Vec<Option<T>> = (0..=255u8).map(|_| None).collect();
+        for (glyph, meaning) in rows {
+            if let Some(slot) = all.get_mut(usize::from(glyph)) {
+                *slot = Some(meaning);
+            }
+        }
+        Self(all)
+    }
+}
+
 /// A word and what it means.
 pub(super) struct Entry<T> {
     /// The word, folded.

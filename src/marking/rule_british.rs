@@ -23,8 +23,8 @@ pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mu
         return;
     }
     let codes = &lexicon.codes;
-    let tolerance = codes.british_tolerances.get(&scan.at(first));
-    let coefficient = codes.british_coefficients.get(&scan.at(second));
+    let tolerance = codes.british_tolerances.get(scan.at(first));
+    let coefficient = codes.british_coefficients.get(scan.at(second));
     let amount = Amount::of(figures, PICOFARAD);
     if let Some(((&(limits, why), &row), amount)) = tolerance.zip(coefficient).zip(amount) {
         let word = lexicon.words.get(usize::from(row));

@@ -23,7 +23,8 @@ pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mu
         }
     };
     let runs_on = TABLES.ranking.factors.characteristic_touches;
-    if before != Sort::Letter && before != Sort::Digit {
+    let starts = codes.characteristic_starts.get(scan.at(at)).is_some();
+    if starts && before != Sort::Letter && before != Sort::Digit {
         let three = [scan.at(at), scan.at(at + 1), scan.at(at + 2)];
         if !touches(at + 3)
             && three[1] != b' '
@@ -44,7 +45,7 @@ pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mu
         let is_behind = scan.at(at - 1).is_ascii_uppercase()
             && !scan.at(at.wrapping_sub(2)).is_ascii_uppercase()
             && touches(at.wrapping_sub(2));
-        if let Some(&row) = codes.coefficients.get(&scan.at(at)).filter(|_| is_behind) {
+        if let Some(&row) = codes.coefficients.get(scan.at(at)).filter(|_| is_behind) {
             push(at + 1, row, runs_on);
         }
     }

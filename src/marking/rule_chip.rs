@@ -22,7 +22,7 @@ pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mu
     }
     let letter_at = end - 1;
     let digit = scan.at(end);
-    let Some(&tenths) = lexicon.codes.chip_mantissas.get(&scan.at(letter_at)) else {
+    let Some(&tenths) = lexicon.codes.chip_mantissas.get(scan.at(letter_at)) else {
         return;
     };
     let row = lexicon

@@ -3,6 +3,7 @@
 //! ```text
 //! colours = colour { [","] colour }       three to eight of them, the marking starts with them
 //! colour  = word | "-"                    "brown"  "BN"; a dash or `none` is a dot that is not there
+//! tip     = colour ("tip" | "dot" …)      "violet tip": the coefficient of a ceramic part
 //! ```
 //! Words such as `wide`, `spot` or `dot` may stand between. A wide band may be two equal ones side by side, so both are
 //! tried. Every order of bands with so many of them (`colour-systems.toml`) is proposed, read from either end.
@@ -28,7 +29,11 @@ struct Bands {
 
 /// Proposes what the colours at the start of a marking may mean.
 pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mut Pieces) {
-    if at != scan.after_blanks(0) || colour(scan, at, lexicon).is_none() {
+    let Some((first, end)) = colour(scan, at, lexicon) else {
+        return;
+    };
+    tip(scan, (at, end), first, lexicon, pieces);
+    if at != scan.after_blanks(0) {
         return;
     }
     let typed = bands(scan, at, lexicon);
@@ -60,6 +65,24 @@ pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mu
                 read(&backward, &typed.others, system, reversed, lexicon, pieces);
             }
         }
+    }
+}
+
+/// Proposes the coefficient that a coloured tip or dot stands for: "violet tip".
+fn tip(scan: &Scan<'_>, (at, end): Cells, first: u8, lexicon: &Lexicon, pieces: &mut Pieces) {
+    let colours = &lexicon.colours;
+    let word_at = scan.after_blanks(end);
+    let Some((_, end)) = colour(scan, word_at, lexicon).filter(|word| word.0 == colours.between)
+    else {
+        return;
+    };
+    if let Some(says) = colours.says.get(&(colours.tip, first)) {
+        pieces.push(
+            (at, end),
+            Meaning::Word(says.word),
+            says.evidence,
+            says.share,
+        );
     }
 }
 

@@ -60,7 +60,7 @@ fn two_characters(scan: &Scan<'_>, at: usize, lexicon: &Lexicon) -> [Found; 2] {
     let codes = &lexicon.codes;
     let factors = &TABLES.ranking.factors;
     let date = |year: u8, month: u8, weight: f64| {
-        let (&year, &month) = codes.years.get(&year).zip(codes.months.get(&month))?;
+        let (&year, &month) = codes.years.get(year).zip(codes.months.get(month))?;
         let date = Date {
             year,
             month,

@@ -24,7 +24,9 @@ struct Section {
 
 /// Proposes the sections at a cell.
 pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mut Pieces) {
-    if matches!(scan.sort(at.wrapping_sub(1)), Sort::Digit | Sort::Letter) {
+    if !scan.may_have_sections()
+        || matches!(scan.sort(at.wrapping_sub(1)), Sort::Digit | Sort::Letter)
+    {
         return;
     }
     let Some(first) = section(scan, at, lexicon) else {

@@ -8,7 +8,7 @@
 use super::lexicon::{Lexicon, Volts};
 use super::piece::{Form, Meaning, Pieces, Voltage};
 use super::scan::{Scan, Sort};
-use crate::tables::VoltageKind;
+use crate::tables::{TABLES, VoltageKind};
 
 /// Proposes the voltage codes at a cell.
 pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mut Pieces) {
@@ -33,14 +33,15 @@ fn single(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mut Pieces) {
     if scan.sort(at.wrapping_sub(1)) == Sort::Letter
         && !matches!(scan.sort(at + 1), Sort::Letter | Sort::Digit)
         && scan.is_cyrillic()
-        && let Some(&(volts, evidence)) = lexicon.codes.soviet_volts.get(&scan.at(at))
+        && let Some(&(volts, evidence)) = lexicon.codes.soviet_volts.get(scan.at(at))
     {
+        let soviet = TABLES.ranking.factors.soviet_voltage;
         let voltage = Voltage {
             volts,
             kind: VoltageKind::Dc,
             form: Form::Said,
         };
-        pieces.push((at, at + 1), Meaning::Voltage(voltage), evidence, 0.1);
+        pieces.push((at, at + 1), Meaning::Voltage(voltage), evidence, soviet);
     }
     if leads || ends {
         for entry in lexicon.voltage_letters.starting(scan.at(at)) {

@@ -28,6 +28,8 @@ pub(super) struct Scan<'t> {
     starts: [u16; MOST_CELLS + 1],
     n_cells: usize,
     facing: Facing,
+    /// How many signs that join sections there are.
+    n_joins: usize,
 }
 
 /// How the part is held.
@@ -72,6 +74,7 @@ impl<'t> Scan<'t> {
             starts: [0; MOST_CELLS + 1],
             n_cells: 0,
             facing: Facing::Upright,
+            n_joins: 0,
         };
         let mut end = 0;
         for ((start, character), (slot, place)) in text
@@ -83,6 +86,7 @@ impl<'t> Scan<'t> {
             *place = u16::try_from(start).unwrap_or(u16::MAX);
             end = start + character.len_utf8();
             scan.n_cells += 1;
+            scan.n_joins += usize::from(matches!(*slot, b'+' | b'x' | b'X' | b'('));
         }
         if let Some(place) = scan.starts.get_mut(scan.n_cells) {
             *place = u16::try_from(end).unwrap_or(u16::MAX);
@@ -105,6 +109,11 @@ impl<'t> Scan<'t> {
         }
         turned.facing = Facing::UpsideDown;
         turned
+    }
+
+    /// Returns whether there is any sign that joins sections.
+    pub(super) fn may_have_sections(&self) -> bool {
+        self.n_joins > 0
     }
 
     /// Returns whether any letter is Cyrillic.

@@ -5,9 +5,10 @@
 //! "1O4K"   O and 0, I and 1, B and 8, S and 5, Z and 2 are taken for each other where the marking makes little sense as typed
 //! "681"    figures that are figures upside down too are also read that way
 //! ```
-//! Bounds: one `?` is completed from the long list of characters, two or three from the short one, the leftmost ones first; at
-//! most [`MOST_COMPLETIONS`] completions are tried, and any further `?` stays unexplained. At most [`MOST_SLIPS`]
-//! look-alikes are tried, one at a time.
+//! Bounds: one `?` is completed from the long list of characters, more from the short one, the leftmost ones first, as long as
+//! there are at most [`MOST_COMPLETIONS`] completions, and of a long text so many that all of them together have at most
+//! [`MOST_COMPLETED_CELLS`] characters. So a short marking has two completed and a line of 96 characters one; any further `?`
+//! stays unexplained. At most [`MOST_SLIPS`] look-alikes are tried, one at a time.
 
 use super::scan::{MOST_CELLS, Scan, UNREADABLE, glyph};
 use crate::tables::{Beside, Mistaken, TABLES};
@@ -15,6 +16,8 @@ use std::sync::LazyLock;
 
 /// How many completions of unreadable characters are tried.
 pub(super) const MOST_COMPLETIONS: usize = 512;
+/// How many characters all completions have together.
+pub(super) const MOST_COMPLETED_CELLS: usize = 8192;
 /// How many look-alikes are tried.
 pub(super) const MOST_SLIPS: usize = 8;
 
@@ -135,9 +138,10 @@ pub(super) fn completions(scan: &Scan<'_>) -> Vec<Variant> {
         1 => &LISTS.alone,
         _ => &LISTS.others,
     };
+    let most = MOST_COMPLETIONS.min(MOST_COMPLETED_CELLS / scan.len().max(1));
     let mut variants = vec![(Vec::new(), 1.0)];
     for &cell in &cells {
-        if variants.len() * list.len() > MOST_COMPLETIONS {
+        if variants.len() * list.len() > most {
             break;
         }
         let longer = |(glyphs, share): &(Vec<(usize, u8)>, f64)| {

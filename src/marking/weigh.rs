@@ -132,6 +132,9 @@ struct Usual {
     likely: (usize, f64),
 }
 
+/// Kinds with less than this part of the sum are left out of it.
+const LEAST_KIND: f64 = 1e-7;
+
 /// Returns how usual the marks are together, summed over the kinds.
 fn usual(beam: &Beam<'_, '_>, path: &Path, marks: &Marks, ranking: &Ranking) -> Usual {
     let (lexicon, factors) = (beam.lexicon, &ranking.factors);
@@ -143,10 +146,11 @@ fn usual(beam: &Beam<'_, '_>, path: &Path, marks: &Marks, ranking: &Ranking) -> 
     let no_voltage = row(lexicon.named.no_voltage);
     let views = lexicon.view(path.slots.view);
     let mut sums = Usual::default();
+    let least = LEAST_KIND * path.kinds.iter().sum::<f64>();
     for (kind, facts) in ranking.kinds.iter().enumerate() {
         let at = |figures: &[f64; KINDS]| figures.get(kind).copied().unwrap_or(0.0);
         let mut share = at(&path.kinds);
-        let Some(view) = views.get(kind).filter(|_| share > 0.0) else {
+        let Some(view) = views.get(kind).filter(|_| share > least) else {
             continue;
         };
         share *= match marks.tolerance {

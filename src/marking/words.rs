@@ -7,7 +7,8 @@ use super::rank::Masses;
 use super::variants::Variant;
 use super::weigh::Ranked;
 use super::{Decoding, Reading, Role, Used, WithoutValue};
-use crate::tables::{Family, TABLES};
+use crate::tables::{Family, Kind, TABLES};
+use std::sync::LazyLock;
 
 /// How many readings are given.
 const MOST_READINGS: usize = 50;
@@ -240,16 +241,28 @@ fn said(beam: &Beam<'_, '_>, pieces: &[&Piece]) -> Vec<String> {
     found
 }
 
+/// The families of each kind in words.
+static LOOKS_LIKE: LazyLock<Vec<String>> = LazyLock::new(|| {
+    let words = |kind: &Kind| {
+        let families: Vec<&str> = kind.families.iter().map(|family| family.name()).collect();
+        format!("looks like {} (", families.join(" or "))
+    };
+    TABLES.ranking.kinds.iter().map(words).collect()
+});
+
 /// Returns what kind of part the reading looks like, and how sure that is.
 fn likely_family(one: &Ranked) -> Option<String> {
     let (kind, share) = one.likely;
-    let kind = TABLES.ranking.kinds.get(kind).filter(|_| share >= LIKELY)?;
-    let families: Vec<&str> = kind.families.iter().map(|family| family.name()).collect();
-    let percent = (share * 100.0).round();
-    Some(format!(
-        "looks like {} ({percent} of 100 such markings)",
-        families.join(" or ")
-    ))
+    let words = LOOKS_LIKE.get(kind).filter(|_| share >= LIKELY)?;
+    let percent = (0..100u8).rev().find(|&n| f64::from(n) / 100.0 <= share)?;
+    Some(
+        [
+            words,
+            percent.to_string().as_str(),
+            " of 100 such markings)",
+        ]
+        .concat(),
+    )
 }
 
 fn contradiction(beam: &Beam<'_, '_>, piece: &Piece) -> String {

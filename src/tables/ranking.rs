@@ -157,6 +157,8 @@ factors!(
     chip_code_beside: "A chip code with other marks beside it.",
     date_two_characters: "A date of two characters.",
     date_other_order: "A date in another order than the standard's.",
+    soviet_voltage: "A voltage letter of Soviet parts.",
+    letter_for_zero: "The letter O for the zero of a voltage code.",
     colours_reversed: "Colours read from the other end.",
     slip: "A character taken for its look-alike.",
     turned: "A part read upside down.",

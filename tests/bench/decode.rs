@@ -30,10 +30,10 @@ fn marking(bencher: Bencher<'_, '_>, marking: &str) {
     bencher.bench(|| decode(black_box(marking), None));
 }
 
-/// Growth with tokens: the same marking with more and more dates and lots behind it.
+/// Growth with tokens: the same marking with more and more text behind it.
 #[divan::bench(args = [1, 2, 4, 8, 16])]
 fn tokens(bencher: Bencher<'_, '_>, n: usize) {
-    let others = ["8323", "J8", "HX27Q4", "85°C"];
+    let others = ["HX27Q4", "EN132400", "85°C", "3046712"];
     let more = others.iter().cycle().take(n - 1);
     let text = more.fold("224J".to_owned(), |text, token| format!("{text} {token}"));
     assert_eq!(best(&text).as_deref(), Some("220 nF"), "decoding {text}");
@@ -41,9 +41,9 @@ fn tokens(bencher: Bencher<'_, '_>, n: usize) {
 }
 
 /// Growth with unreadable characters, up to the bound and past it.
-#[divan::bench(args = ["224J", "22?J", "2??J", "2A???J", "????????"])]
+#[divan::bench(args = ["224J", "22?J", "2??J", "2A???J", "2???????J"])]
 fn unreadable(bencher: Bencher<'_, '_>, text: &str) {
-    assert!(!decode(text, None).readings.is_empty(), "decoding {text}");
+    assert!(decode(text, None).readings.len() < 51, "decoding {text}");
     bencher.bench(|| decode(black_box(text), None));
 }
 

@@ -269,6 +269,65 @@ fn the_family_is_that_given_or_found() {
     assert_eq!(family("104K X7R", "mlcc2"), Some("mlcc2"));
 }
 
+/// Markings that mean values a thousandfold apart on different parts: none of them is claimed without knowing the part.
+#[test]
+fn traps_are_not_claimed() {
+    for marking in [
+        "100", "470", "1000", "2200", "22K", "47K", "100K", "10M", "22M", "4.7", "8.2", "108",
+        "228", "158", "R47", "R22", "5R6", "1R0", "4R7", "2200/63", "1M0", "1m0", "3300mF", "10",
+        "47", "10 16", "2.2 400V", "22 35", "3.3K", "10K",
+    ] {
+        let decoding = decode(marking, None);
+        let best = decoding.best().map_or(0.0, |best| best.plausibility);
+        assert!(best <= 0.5 + 1e-9, "{marking}: {best}");
+        assert!(
+            decoding.readings.len() > 1,
+            "{marking} has a single reading"
+        );
+    }
+}
+
+#[test]
+fn odd_characters_are_accounted_for() {
+    for plane in 0..17u32 {
+        for low in [0x0, 0x41, 0x2000, 0x8000, 0xd000, 0xf000, 0xffff] {
+            if let Some(odd) = char::from_u32(plane * 0x1_0000 + low) {
+                assert_accounted(&decode(&format!("104{odd}K 50V{odd}"), None));
+            }
+        }
+    }
+    for odd in [
+        '\u{200f}', '\u{202e}', '\u{2066}', '\0', '\u{1b}', '\u{feff}', '٣', '∆',
+    ] {
+        let decoding = decode(&format!("{odd}104K{odd}"), None);
+        assert_accounted(&decoding);
+        assert!(decoding.best().is_some(), "{odd:?}");
+    }
+}
+
+#[test]
+fn what_says_no_value_is_named() {
+    for (marking, why) in [
+        ("8323", "week 23 of 1983"),
+        ("J8", "August 1977"),
+        ("2C1", "class 2"),
+        ("FME", "-55 °C"),
+    ] {
+        let decoding = decode(marking, None);
+        let without = decoding.without_value.expect("it is said what was seen");
+        assert!(
+            without.plausibility > 0.5,
+            "{marking} {}",
+            without.plausibility
+        );
+        assert!(
+            without.why.iter().any(|found| found.contains(why)),
+            "{marking}: {:?}",
+            without.why
+        );
+    }
+}
+
 #[test]
 fn long_texts_are_listed_not_dropped() {
     let marking = format!("104K {}", "x".repeat(10_000));
@@ -348,6 +407,15 @@ proptest! {
         let expected = f64::from(mantissa) * 10f64.powi(power) / 1e12;
         let close = |farads: f64| (farads / expected - 1.0).abs() < 1e-12;
         prop_assert!(decoding.readings.iter().any(|reading| close(reading.capacitance.get())));
+    }
+}
+
+proptest! {
+    #![proptest_config(ProptestConfig::with_cases(48))]
+
+    #[test]
+    fn worn_texts_decode(text in "([0-9.?]{1,4}|[nuRKMJZ?]|[12?][AEHJ?]| |red|brown|black){0,8}") {
+        assert_accounted(&decode(&text, None));
     }
 }
 
