@@ -8,7 +8,7 @@
 use super::lexicon::Lexicon;
 use super::piece::{Amount, Pieces};
 use super::scan::{Scan, Sort, power_of_ten};
-use crate::tables::Place;
+use crate::tables::{Place, TABLES};
 
 const MOST_DIGITS: usize = 4;
 
@@ -33,7 +33,15 @@ pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mu
             + decimals.digits;
         let n_decimals = i8::try_from(decimals.n_whole).unwrap_or(0);
         let amount = Amount::new(digits, unit.exponent - n_decimals);
-        pieces.value((at, decimals.end), amount, unit.evidence, unit.share);
+        // Nobody prints "p100" for p1.
+        let has_idle_zero = decimals.n_whole > 1 && digits.is_multiple_of(10);
+        let idle = if has_idle_zero {
+            TABLES.ranking.factors.idle_zero
+        } else {
+            1.0
+        };
+        let weight = unit.share * idle;
+        pieces.value((at, decimals.end), amount, unit.evidence, weight);
     }
 }
 

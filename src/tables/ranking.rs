@@ -134,6 +134,7 @@ factors!(
     unit_letter_decimal_one: "The same from 1 up.",
     four_figures: "A value of no series with more than three figures.",
     unit_letter_runs_on: "A unit of one letter with a digit right behind it.",
+    idle_zero: "Idle zeros behind a letter for the point.",
     unit_letter_apart: "A blank between the figures and a unit of one letter.",
     word_alone: "A family word apart from the figures behind it.",
     temperature_without_degree: "A temperature without its degree sign.",
