@@ -120,10 +120,7 @@ pub(super) fn codes(
             let is_roman = row.mark.chars().all(|c| "IVX".contains(c));
             Some((row.mark.clone(), row.month.filter(|_| is_roman)?))
         })),
-        texts: ByFirst::new(TABLES.text_words().map(|row| {
-            let why = said("no value:", row);
-            (row.word.clone(), reasons.add(neutral, why))
-        })),
+        texts: texts(reasons, named.text),
         climates: climates(reasons),
         chip_mantissas: TABLES
             .chip_mantissas()
@@ -349,6 +346,23 @@ fn by_value() -> Vec<ByValue> {
         })
     };
     TABLES.military_voltages().filter_map(row).collect()
+}
+
+fn texts(reasons: &mut Reasons, text: u16) -> ByFirst<u16> {
+    let usual = reasons.figures(text);
+    ByFirst::new(TABLES.text_words().map(|row| {
+        let mut on = usual;
+        for (kind, share) in TABLES.ranking.kinds.iter().zip(&mut on) {
+            if row
+                .kinds
+                .as_ref()
+                .is_some_and(|kinds| !kinds.contains(&kind.name))
+            {
+                *share = 0.0;
+            }
+        }
+        (row.word.clone(), reasons.add(on, said("no value:", row)))
+    }))
 }
 
 fn climates(reasons: &mut Reasons) -> HashMap<[u8; 3], u16> {

@@ -140,7 +140,10 @@ fn says(
     reasons: &mut Reasons,
     views: &[[View; KINDS]],
 ) -> Says {
-    let evidence = reasons.add([1.0; KINDS], format!("as {}: {}", row.column, row.says));
+    let evidence = reasons.add(
+        [1.0; KINDS],
+        format!("as {}: {}", row.column, row.in_words()),
+    );
     let family = Family::Member(Dielectric::Disc1);
     Says {
         number: row.says.parse().ok(),

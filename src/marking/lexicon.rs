@@ -145,7 +145,7 @@ named_evidence!(
     worn_point
     voltage_code voltage_word voltage_ac voltage_bare voltage_group voltage_letter
     safety family no_voltage no_tolerance
-    temperature characteristic chip_code british sections military date
+    temperature text characteristic chip_code british sections military date
 );
 
 /// The tables, ready for the rules.

@@ -36,9 +36,21 @@ plain_row! {
     key(row) format!("{} {}", row.column, row.colour);
     check(row) row.small.as_deref().and_then(|small| tolerance(small).err());
     show(row, f) match &row.small {
-        Some(small) => write!(f, "{} as {}: {}, below 10 pF {small}", row.colour, row.column, row.says),
-        None => write!(f, "{} as {}: {}", row.colour, row.column, row.says),
+        Some(small) => write!(f, "{} as {}: {}, below 10 pF {small}", row.colour, row.column, row.in_words()),
+        None => write!(f, "{} as {}: {}", row.colour, row.column, row.in_words()),
     };
+}
+
+impl ColourMeaning {
+    /// Returns what the colour says, a power of ten or a voltage written out.
+    pub fn in_words(&self) -> String {
+        let is_number = self.says.parse::<f64>().is_ok();
+        match self.column.rsplit(' ').next() {
+            Some("multiplier") if is_number => format!("times 10^{}", self.says),
+            Some("voltage") if is_number => format!("{} V", self.says),
+            _ => self.says.clone(),
+        }
+    }
 }
 
 /// What a band or dot is for.

@@ -29,6 +29,8 @@ plain_row! {
         word: String,
         /// What it says.
         says: String,
+        /// The kinds of the ranking table that carry it; none: all.
+        kinds: Option<Vec<String>>,
     }
     key(row) row.word.clone();
     check(row) row.word.trim().is_empty().then(|| "the word is empty".to_owned());

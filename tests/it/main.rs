@@ -23,5 +23,6 @@ mod spice;
 mod stated;
 mod strd;
 mod table;
+mod standards;
 mod tables;
 mod truth;
