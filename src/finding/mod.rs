@@ -5,6 +5,7 @@
 
 mod advice;
 mod cause;
+mod control;
 mod judge;
 mod lamp;
 mod limits;
@@ -19,6 +20,7 @@ mod slip;
 mod verdict;
 
 pub use cause::{Cause, Hypothesis, Next};
+pub use control::{ACT, CheckReading, Control, ControlChart, ControlPoint, Moved, WARN, control};
 pub use judge::judge;
 pub use lamp::lamp_says;
 pub use limits::{expect, limits, usual_loss};
