@@ -22,6 +22,11 @@ pub struct Setup {
 }
 
 impl Setup {
+    /// Returns what the log calls the profile: the CRC-32 of its text, eight hexadecimal digits.
+    pub fn profile_hash(&self) -> String {
+        format!("{:08x}", crc32fast::hash(self.profile_text.as_bytes()))
+    }
+
     /// Returns the house rules in force.
     pub fn rules(&self) -> HouseRules {
         self.tray

@@ -34,10 +34,7 @@ pub(super) fn submit(state: &mut State) -> Vec<Effect> {
         Typed::Reading(number) => choose_reading(state, number),
         Typed::Addition(addition) => add(state, addition),
         Typed::Check(label) => begin_check(state, &label),
-        Typed::Zero => {
-            begin(state, Subject::Zero);
-            Vec::new()
-        }
+        Typed::Zero => begin(state, Subject::Zero),
         Typed::NewMeter => describing::begin(state),
     }
 }
@@ -131,7 +128,7 @@ fn take_sighting(state: &mut State, sighting: Sighting) -> Vec<Effect> {
         circumstances,
         note,
     };
-    let judgement = work.judged(&state.setup);
+    let judgement = work.judged(&state.setup, &state.checks);
     if let Some(text) = question(&work, &judgement) {
         state.notice = Some(Notice::new(Tone::Asked, text));
         state.bench.question = Some(Question {
@@ -212,6 +209,7 @@ pub(super) fn logged(state: &mut State, answer: Result<Box<Entry>, LogFailure>) 
         }
     };
     state.lot.accept(entry.clone());
+    state.checks.accept(entry.clone());
     let number = state.lot.number(entry.id);
     let is_part = entry.record.kind == RecordKind::Part;
     if pending.purpose == Purpose::New && is_part {
@@ -235,8 +233,28 @@ pub(super) fn logged(state: &mut State, answer: Result<Box<Entry>, LogFailure>) 
         }
     }
     advise_same_side(state);
+    say_what_is_in_doubt(state);
     remind_of_check(state);
     Vec::new()
+}
+
+/// Names the parts of the lot that a check which has just failed puts in doubt.
+fn say_what_is_in_doubt(state: &mut State) {
+    let Some(shown) = &state.bench.shown else {
+        return;
+    };
+    let Some(since) = state.checks.doubt_since(shown.id) else {
+        return;
+    };
+    let numbers = state.lot.numbers_since(since);
+    let text = match (numbers.first(), numbers.last()) {
+        (Some(first), Some(last)) if first < last => {
+            format!("in doubt in this lot: parts {first} to {last}")
+        }
+        (Some(only), _) => format!("in doubt in this lot: part {only}"),
+        (None, _) => return,
+    };
+    state.notice = Some(Notice::new(Tone::Said, text));
 }
 
 /// Empties both prompts; the last marking stands greyed.
@@ -284,8 +302,7 @@ fn begin_check(state: &mut State, label: &str) -> Vec<Effect> {
         .find(|check| check.label.eq_ignore_ascii_case(label.trim()));
     if let Some(check) = known {
         let check = check.clone();
-        begin(state, Subject::Check(check));
-        return Vec::new();
+        return begin(state, Subject::Check(check));
     }
     let labels: Vec<&str> = checks.iter().map(|check| check.label.as_str()).collect();
     let known = if labels.is_empty() {
@@ -296,10 +313,12 @@ fn begin_check(state: &mut State, label: &str) -> Vec<Effect> {
     refuse(state, format!("no check part is called `{label}`; {known}"))
 }
 
-fn begin(state: &mut State, subject: Subject) {
+/// Asks for the earlier readings at once, so that they are there when the new one is.
+fn begin(state: &mut State, subject: Subject) -> Vec<Effect> {
     start_over(state);
     state.bench.subject = subject;
     to_dial(state);
+    vec![Effect::LookAtChecks]
 }
 
 #[cfg(test)]

@@ -39,7 +39,7 @@ pub(super) fn add(state: &mut State, addition: Addition) -> Vec<Effect> {
     warn_of_voltage(state, &addition);
     work.add(addition);
     work.circumstances.reading = ReadingCertainty::Confirmed;
-    let judgement = work.judged(&state.setup);
+    let judgement = work.judged(&state.setup, &state.checks);
     append(state, &work, judgement, Purpose::Addition, Some(target.id))
 }
 

@@ -2,6 +2,7 @@
 
 use tui_input::Input;
 
+use super::check_rows::Chart;
 use super::search;
 
 /// A list with its find prompt.
@@ -21,6 +22,8 @@ pub struct ListView {
     pub sorted_by: Option<usize>,
     /// What the columns are called.
     pub columns: Vec<&'static str>,
+    /// Charts that rows speak of.
+    pub charts: Vec<Chart>,
 }
 
 /// A row of a list.
@@ -34,6 +37,8 @@ pub struct Row {
     pub finding: Option<String>,
     /// What it is sorted by in each column, where that is a number.
     pub keys: Vec<Option<f64>>,
+    /// Which of the charts it speaks of.
+    pub chart: Option<usize>,
 }
 
 impl Row {
@@ -44,6 +49,7 @@ impl Row {
             details: Vec::new(),
             finding: None,
             keys: Vec::new(),
+            chart: None,
         }
     }
 
@@ -72,6 +78,12 @@ impl ListView {
     /// Returns the selected row.
     pub fn selected_row(&self) -> Option<&Row> {
         self.rows.get(*self.order.get(self.selected)?)
+    }
+
+    /// Returns the chart of the selected row, else the first one.
+    pub fn chart(&self) -> Option<&Chart> {
+        let chosen = self.selected_row().and_then(|row| row.chart);
+        self.charts.get(chosen.unwrap_or(0))
     }
 
     /// Finds and sorts anew.

@@ -13,6 +13,8 @@ pub struct Lot {
     pub entries: Vec<Entry>,
     /// How many parts lie in each compartment, of all lots.
     pub counts: BTreeMap<String, u32>,
+    /// Which entries the corrected ones go back to.
+    firsts: Firsts,
 }
 
 /// A share with its interval.
@@ -40,12 +42,14 @@ impl Lot {
     /// Takes over what stands in the log now.
     pub(super) fn refresh(&mut self, standing: Standing) {
         self.counts = standing.counts.into_iter().collect();
+        self.firsts = Firsts::of(&standing.entries);
         self.entries = in_order(standing.entries);
     }
 
     /// Takes in an entry that was just written.
     pub(super) fn accept(&mut self, entry: Entry) {
         let replaced = entry.record.replaces;
+        self.firsts.accept(&entry);
         let place = self.entries.iter().position(|e| Some(e.id) == replaced);
         if let Some(compartment) = went_to(&entry.record.outcome) {
             *self.counts.entry(compartment.to_owned()).or_default() += 1;
@@ -75,6 +79,16 @@ impl Lot {
         self.parts()
             .position(|entry| entry.id == id)
             .map(|index| index + 1)
+    }
+
+    /// Returns the running numbers of the parts that were measured after an entry; of all, without one.
+    pub(super) fn numbers_since(&self, good: Option<RecordId>) -> Vec<usize> {
+        let after = |id: RecordId| good.is_none_or(|good| self.firsts.first(id) > good);
+        let numbered = (1..).zip(self.parts());
+        numbered
+            .filter(|(_, entry)| after(entry.id))
+            .map(|(number, _)| number)
+            .collect()
     }
 
     /// Returns how many parts have this finding.
@@ -198,20 +212,39 @@ fn wilson(hits: usize, of: usize) -> Option<Share> {
     })
 }
 
-/// Drops what was voided and puts each entry where the first one of its corrections stood.
-fn in_order(entries: Vec<Entry>) -> Vec<Entry> {
-    let before: HashMap<RecordId, RecordId> = entries
-        .iter()
-        .filter_map(|entry| Some((entry.id, entry.record.replaces?)))
-        .collect();
-    let first = |mut id: RecordId| {
-        while let Some(earlier) = before.get(&id).filter(|earlier| **earlier < id) {
+/// Which entry each one goes back to, by way of corrections.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub(super) struct Firsts(HashMap<RecordId, RecordId>);
+
+impl Firsts {
+    /// Takes note of who replaces whom; all entries are needed, voided ones too.
+    pub(super) fn of(entries: &[Entry]) -> Self {
+        let before = entries
+            .iter()
+            .filter_map(|entry| Some((entry.id, entry.record.replaces?)));
+        Self(before.collect())
+    }
+
+    /// Takes note of another entry.
+    pub(super) fn accept(&mut self, entry: &Entry) {
+        let before = entry.record.replaces;
+        self.0.extend(before.map(|before| (entry.id, before)));
+    }
+
+    /// Returns the entry that stood first in the place of this one: that is when it was measured.
+    pub(super) fn first(&self, mut id: RecordId) -> RecordId {
+        while let Some(earlier) = self.0.get(&id).filter(|earlier| **earlier < id) {
             id = *earlier;
         }
         id
-    };
+    }
+}
+
+/// Drops what was voided and puts each entry where the first one of its corrections stood.
+pub(super) fn in_order(entries: Vec<Entry>) -> Vec<Entry> {
+    let firsts = Firsts::of(&entries);
     let mut standing: Vec<Entry> = entries.into_iter().filter(|e| e.voided.is_none()).collect();
-    standing.sort_by_key(|entry| (first(entry.id), entry.id));
+    standing.sort_by_key(|entry| (firsts.first(entry.id), entry.id));
     standing
 }
 

@@ -6,6 +6,8 @@
 mod assess;
 mod bench;
 mod cautions;
+mod check_rows;
+mod checks;
 mod describing;
 mod earlier;
 mod entry;
@@ -30,6 +32,8 @@ mod work;
 pub use crate::finding::Circumstances;
 pub use assess::{Assessment, Marked, Setup, assess, compartment, outcome, predict_marked};
 pub use cautions::{GENERAL, SAME_SIDE, cautions, limits_in_force};
+pub use check_rows::Chart;
+pub use checks::{Checked, Checks, Series, SeriesKey, day_and_time};
 pub use describing::is_at_the_end;
 pub use entry::{Addition, Prompt, Typed, read as read_entry};
 pub use figures::{deviation, probability, uncertain};
@@ -45,5 +49,5 @@ pub use state::{
     Bench, Colours, Correcting, Effect, Event, Front, Glyphs, Last, Look, MeterFrom, Notice,
     Opening, Park, Pending, Purpose, Question, Shown, Size, Standing, State, Tone, Units, Warning,
 };
-pub use update::{list_height, open, update};
+pub use update::{chart_height, list_height, open, update};
 pub use work::{Judgement, Subject, Work, place_of};

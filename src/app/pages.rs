@@ -1,5 +1,6 @@
 //! What the list screens say: one function a screen, from state to rows.
 
+use super::check_rows::check_rows;
 use super::figures::deviation;
 use super::lists::{ListView, Row};
 use super::lot::{Share, in_tolerances};
@@ -71,10 +72,12 @@ fn sorted_row(units: Units, entry: &Entry) -> Row {
             None,
             None,
         ],
+        chart: None,
     }
 }
 
-/// Rows of what each switch of the meter can do, then the check parts over time.
+/// Rows of what each switch of the meter can do, then the check parts, then what they read, the latest first, with the
+/// charts.
 pub(super) fn meter(state: &State) -> ListView {
     let meter = &state.setup.meter;
     let mut rows: Vec<Row> = meter.switches().map(|s| switch_row(state, s)).collect();
@@ -87,33 +90,14 @@ pub(super) fn meter(state: &State) -> ListView {
         ])
     });
     rows.extend(known);
-    rows.extend(
-        state
-            .lot
-            .entries
-            .iter()
-            .rev()
-            .filter(|entry| entry.record.kind != RecordKind::Part)
-            .map(|entry| check_row(state.look.units, entry)),
-    );
-    ListView::new(
-        vec!["what", "which", "reach", "doubt at its best, k = 2"],
-        rows,
-    )
-}
-
-fn check_row(units: Units, entry: &Entry) -> Row {
-    let outcome = &entry.record.outcome;
-    Row {
-        cells: vec![
-            entry.time.format("%-d %b %H:%M").to_string(),
-            entry.record.raw.marking.clone(),
-            units.measured_with_doubt(outcome).unwrap_or_default(),
-            deviation(outcome).unwrap_or_default(),
-        ],
-        details: vec![outcome.remark.clone()],
-        finding: Some(outcome.finding.clone()),
-        keys: Vec::new(),
+    let (check_rows, charts) = check_rows(&state.checks, state.look.units);
+    rows.extend(check_rows);
+    ListView {
+        charts,
+        ..ListView::new(
+            vec!["what", "which", "reach", "doubt at its best, k = 2"],
+            rows,
+        )
     }
 }
 

@@ -5,6 +5,7 @@ use std::path::PathBuf;
 use tui_input::Input;
 
 use super::Key;
+use super::checks::Checks;
 use super::entry::Prompt;
 use super::lists::ListView;
 use super::lot::Lot;
@@ -31,6 +32,9 @@ pub struct State {
     pub front: Front,
     /// The lot.
     pub lot: Lot,
+    /// The readings of check parts and open terminals, as far as they are known: those of the lot at first, of all lots
+    /// once they were asked for.
+    pub checks: Checks,
     /// The rows of the code tables.
     pub codes: Vec<TableRow>,
     /// What is to be said now.
@@ -331,6 +335,8 @@ pub enum Event {
     Looked(Result<Vec<Entry>, LogFailure>),
     /// The profile is on disk at this place, or is not.
     ProfileWritten(Result<PathBuf, ProfileFailure>),
+    /// All readings of check parts and open terminals, voided ones too, as asked for.
+    LookedAtChecks(Result<Vec<Entry>, LogFailure>),
 }
 
 /// What stands in the log.
@@ -355,6 +361,8 @@ pub enum Effect {
     Look,
     /// Write a profile; answered by [`Event::ProfileWritten`].
     WriteProfile(Box<Draft>),
+    /// Read the readings of check parts and open terminals of all lots; answered by [`Event::LookedAtChecks`].
+    LookAtChecks,
     /// Ring, if that was asked for.
     Bell,
 }

@@ -131,6 +131,7 @@ impl Table {
             }
             Effect::Look => Some(Event::Looked(Ok(self.entries.clone()))),
             Effect::WriteProfile(draft) => Some(Event::ProfileWritten(self.write(*draft))),
+            Effect::LookAtChecks => Some(Event::LookedAtChecks(Ok(self.entries.clone()))),
             Effect::Bell => None,
         }
     }
@@ -161,7 +162,7 @@ impl Table {
             id: RecordId(number),
             time: time.fixed_offset(),
             voided: None,
-            profile: "00000000".to_owned(),
+            profile: self.state.setup.profile_hash(),
             record,
         };
         self.entries.push(entry.clone());
@@ -209,6 +210,7 @@ fn in_words(effect: &Effect) -> String {
         Effect::BringBack => "bring back".to_owned(),
         Effect::Look => "look".to_owned(),
         Effect::WriteProfile(draft) => format!("write {}", draft.path.display()),
+        Effect::LookAtChecks => "look at checks".to_owned(),
         Effect::Bell => "bell".to_owned(),
     }
 }

@@ -2,18 +2,21 @@
 
 use tui_input::{Input, InputRequest};
 
+use super::checks::Checks;
 use super::entry::Prompt;
 use super::new_meter::Interview;
 use super::pages;
 use super::state::{
     Bench, Effect, Event, Front, Last, Notice, Opening, Size, State, Tone, Warning,
 };
-use super::{Entry, Intent, Key, LogFailure, Lot, Page, Standing};
+use super::{Entry, Intent, Key, LogFailure, Lot, Page, RecordKind, Standing};
 use super::{bench, describing, earlier, expecting, help};
 
 /// Makes the state the program starts with; Enter alone repeats the last marking of the lot.
 pub fn open(opening: Opening) -> State {
+    let checks = Checks::new(opening.standing.entries.clone());
     let mut state = State {
+        checks,
         setup: opening.setup,
         meter_from: opening.meter_from,
         look: opening.look,
@@ -63,7 +66,7 @@ pub fn update(state: &mut State, event: Event) -> Vec<Effect> {
         }
         Event::Resize(size) => {
             state.size = size;
-            let height = list_height(size);
+            let height = list_height(state.front.page(), size);
             if let Some(list) = state.front.list_mut() {
                 list.move_by(0, height);
             }
@@ -87,17 +90,43 @@ pub fn update(state: &mut State, event: Event) -> Vec<Effect> {
             Vec::new()
         }
         Event::ProfileWritten(answer) => describing::written(state, answer),
-        Event::Looked(Err(failure)) => {
+        Event::LookedAtChecks(Ok(entries)) => {
+            state.checks = Checks::new(entries);
+            if matches!(state.front, Front::Meter(_)) {
+                state.front = Front::Meter(pages::meter(state));
+            }
+            Vec::new()
+        }
+        Event::Looked(Err(failure)) | Event::LookedAtChecks(Err(failure)) => {
             state.notice = Some(Notice::new(Tone::Failed, failure.to_string()));
             vec![Effect::Bell]
         }
     }
 }
 
-/// Returns how many rows of a list fit a screen of this size: all but header, prompt, column names, details and footer.
-pub fn list_height(size: Size) -> usize {
+/// Returns how many rows of a list fit a screen of this size: all but header, prompt, column names, details and footer, and
+/// on the Meter screen the chart.
+pub fn list_height(page: Page, size: Size) -> usize {
+    let chart = match page {
+        Page::Meter => chart_height(size),
+        _ => 0,
+    };
+    usize::from((rows_below_names(size) - chart).max(1))
+}
+
+/// Returns how many rows the chart on the Meter screen takes, its caption included; 0 where there is no room for one.
+pub fn chart_height(size: Size) -> u16 {
+    const LEAST: u16 = 6;
+    const MOST: u16 = 14;
+    match rows_below_names(size) {
+        few if few < 2 * LEAST => 0,
+        rows => (rows / 2).clamp(LEAST, MOST),
+    }
+}
+
+fn rows_below_names(size: Size) -> u16 {
     const OTHER_ROWS: u16 = 10;
-    usize::from(size.height.saturating_sub(OTHER_ROWS).max(1))
+    size.height.saturating_sub(OTHER_ROWS)
 }
 
 fn stands_now(
@@ -119,7 +148,10 @@ fn stands_now(
             let (id, marking) = (entry.id, &entry.record.raw.marking);
             let text = format!("entry {id}, {marking}: {done}");
             state.notice = Some(Notice::new(Tone::Said, text));
-            Vec::new()
+            match entry.record.kind {
+                RecordKind::Part => Vec::new(),
+                _ => vec![Effect::LookAtChecks],
+            }
         }
         Ok((None, _)) => {
             state.notice = Some(Notice::new(Tone::Said, nothing));
@@ -140,7 +172,7 @@ fn press(state: &mut State, key: Key) -> Vec<Effect> {
     let Some(request) = editing(key) else {
         return Vec::new();
     };
-    let height = list_height(state.size);
+    let height = list_height(state.front.page(), state.size);
     let changed = if let Some(list) = state.front.list_mut() {
         let changed = list
             .find
@@ -216,7 +248,7 @@ fn act(state: &mut State, intent: Intent) -> Vec<Effect> {
         Intent::RowsUp => move_rows(state, -page_of(state)),
         Intent::RowsDown => move_rows(state, page_of(state)),
         Intent::Sort => {
-            let height = list_height(state.size);
+            let height = list_height(state.front.page(), state.size);
             if let Some(list) = state.front.list_mut() {
                 list.sort_next(height);
             }
@@ -226,18 +258,18 @@ fn act(state: &mut State, intent: Intent) -> Vec<Effect> {
 }
 
 fn page_of(state: &State) -> isize {
-    isize::try_from(list_height(state.size)).unwrap_or(1)
+    isize::try_from(list_height(state.front.page(), state.size)).unwrap_or(1)
 }
 
 fn move_rows(state: &mut State, rows: isize) {
-    let height = list_height(state.size);
+    let height = list_height(state.front.page(), state.size);
     if let Some(list) = state.front.list_mut() {
         list.move_by(rows, height);
     }
 }
 
 fn clear_or_leave(state: &mut State) {
-    let height = list_height(state.size);
+    let height = list_height(state.front.page(), state.size);
     let is_empty = if let Some(list) = state.front.list_mut() {
         let is_empty = list.find.value().is_empty();
         list.find.reset();
@@ -276,10 +308,11 @@ fn show(state: &mut State, page: Page) -> Vec<Effect> {
             _ => Front::Help(shown, help::rows_of(shown)),
         },
     };
-    if page == Page::Tray {
-        return vec![Effect::Look];
+    match page {
+        Page::Tray => vec![Effect::Look],
+        Page::Meter => vec![Effect::LookAtChecks],
+        _ => Vec::new(),
     }
-    Vec::new()
 }
 
 #[cfg(test)]
@@ -323,7 +356,7 @@ mod tests {
         for from in "①②③④⑤⑥".chars() {
             for to in "①②③④⑤⑥".chars() {
                 let asked = table.keys(&format!("②{from}{to}"));
-                assert!(asked.iter().all(|a| a == "look"), "{asked:?}");
+                assert!(asked.iter().all(|a| a.starts_with("look")), "{asked:?}");
             }
         }
     }

@@ -1,15 +1,13 @@
 //! One measurement as it was typed, and what follows from it; the same from the prompt and from the log.
 
+use super::checks::Checks;
 use super::entry::Addition;
 use super::sighting::{Sighting, read_sighting};
 use super::{Assessment, Marked, Outcome, Raw, Record, RecordKind, Setup, assess, outcome};
-use crate::finding::{Circumstances, Word};
+use crate::finding::Circumstances;
 use crate::marking::decode;
-use crate::meter::{
-    AssumedLoss, CheckPart, DialReading, Edge, Estimate, Lamp, Measured, Part, Seen, Switch, Value,
-    measure,
-};
-use crate::quantity::{Farad, Fraction, Ohm, Uncertain, Volt, parse};
+use crate::meter::{AssumedLoss, CheckPart, DialReading, Edge, Part, Seen, Switch};
+use crate::quantity::{Farad, Ohm, Volt, parse};
 use crate::tables::Family;
 use crate::tray::Placement;
 
@@ -71,8 +69,9 @@ impl Subject {
 }
 
 impl Work {
-    /// Returns what follows from the measurement with the meter and tray in force.
-    pub fn judged(&self, setup: &Setup) -> Judgement {
+    /// Returns what follows from the measurement with the meter and tray in force; `checks` are the readings of check parts
+    /// and open terminals so far, for another one of them.
+    pub fn judged(&self, setup: &Setup, checks: &Checks) -> Judgement {
         match &self.subject {
             Subject::Part(marked) => {
                 let assessment = assess(
@@ -91,25 +90,11 @@ impl Work {
                     assessment: Some(assessment),
                 }
             }
-            Subject::Check(check) => {
-                let part = known_part(check.capacitance, check.loss);
-                let measured = measure(&setup.meter, self.switch, self.sighting.seen, &part);
-                let known = Uncertain {
-                    value: check.capacitance,
-                    standard_uncertainty: check.capacitance * check.uncertainty.get(),
-                };
-                compared(&measured, known, Farad::new(0.0), "the check part")
-            }
-            Subject::Zero => {
-                let stray = setup.meter.stray;
-                let part = known_part(Farad::new(0.0), 0.0);
-                let measured = measure(&setup.meter, self.switch, self.sighting.seen, &part);
-                let known = Uncertain {
-                    value: stray,
-                    standard_uncertainty: Farad::new(0.0),
-                };
-                compared(&measured, known, stray, "the stray of the terminals")
-            }
+            Subject::Check(_) | Subject::Zero => Judgement {
+                outcome: checks.outcome(self, setup),
+                assessment: None,
+                unplaced: None,
+            },
         }
     }
 
@@ -190,7 +175,7 @@ impl Work {
             lot: lot.to_owned(),
             kind: self.subject.kind(),
             raw: self.raw(setup),
-            outcome: self.judged(setup).outcome,
+            outcome: self.judged(setup, &Checks::default()).outcome,
             replaces: None,
         }
     }
@@ -261,79 +246,4 @@ pub(super) fn known_part(capacitance: Farad, loss: f64) -> Part {
         },
         family: None,
     }
-}
-
-/// Compares what was measured, `offset` added, with what is known; both doubts count, k = 2.
-fn compared(measured: &Measured, known: Uncertain<Farad>, offset: Farad, what: &str) -> Judgement {
-    let mut outcome = Outcome {
-        nominal_pf: Some(known.value.picofarads()),
-        finding: Word::Undecided.word().to_owned(),
-        ..Outcome::default()
-    };
-    match measured.value {
-        Value::Estimate(estimate) => {
-            fill_comparison(&mut outcome, estimate, known, offset, what);
-        }
-        Value::Open => {
-            "less than the open terminals: nothing is connected".clone_into(&mut outcome.remark);
-        }
-        Value::Window { lamp, .. } => {
-            let seen = match lamp {
-                Lamp::Dark => "dark",
-                Lamp::Lit => "lit",
-            };
-            outcome.remark = format!("a {seen} lamp gives no value to compare: read the dial");
-        }
-        Value::Unknown => {
-            "no value to compare: read the middle of the dark arc".clone_into(&mut outcome.remark);
-        }
-    }
-    Judgement {
-        outcome,
-        assessment: None,
-        unplaced: None,
-    }
-}
-
-fn fill_comparison(
-    outcome: &mut Outcome,
-    estimate: Estimate,
-    known: Uncertain<Farad>,
-    offset: Farad,
-    what: &str,
-) {
-    let found = estimate.combined();
-    let value = found.value + offset;
-    let difference = value - known.value;
-    let doubt = found
-        .standard_uncertainty
-        .get()
-        .hypot(known.standard_uncertainty.get());
-    let expanded = Farad::new(2.0 * doubt);
-    let within = difference.get().abs() <= expanded.get();
-    outcome.low_pf = Some((known.value - expanded).picofarads());
-    outcome.high_pf = Some((known.value + expanded).picofarads());
-    outcome.capacitance_pf = Some(value.picofarads());
-    outcome.uncertainty_pf = Some(found.standard_uncertainty.picofarads());
-    outcome.own_uncertainty_pf = Some(estimate.own.picofarads());
-    let relative = (known.value.get() > 0.0).then(|| Fraction::new(difference / known.value));
-    outcome.deviation_percent = relative.map(Fraction::percent);
-    let word = if within { Word::Inside } else { Word::Outside };
-    word.word().clone_into(&mut outcome.finding);
-    let times = if doubt > 0.0 {
-        difference.get() / doubt
-    } else {
-        0.0
-    };
-    outcome.remark = if within {
-        format!(
-            "{what} agrees: {times:+.1} standard uncertainties from {}",
-            known.value
-        )
-    } else {
-        format!(
-            "{what} disagrees: {times:+.1} standard uncertainties from {}; look at battery, leads and lamp, then calibrate",
-            known.value
-        )
-    };
 }

@@ -278,7 +278,7 @@ mod tests {
         }
     }
 
-    /// Standard normal numbers from a fixed seed (SplitMix64 and the polar form of Box and Muller).
+    /// Standard normal numbers from a fixed seed (`SplitMix64` and the polar form of Box and Muller).
     struct Normal(u64);
 
     impl Normal {

@@ -12,7 +12,7 @@ use super::failure::{Act, Fault};
 use super::row::{self, COLUMNS, Deed, Row};
 use super::standing::Standing;
 use super::tally::{self, Counts};
-use crate::app::{Entry, LogFailure, RecordId};
+use crate::app::{Entry, LogFailure, RecordId, RecordKind};
 
 /// Which entries are wanted.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -61,6 +61,36 @@ impl Log {
             Ok(collect(&transaction, &counts, Some(lot), which, n)?.0)
         };
         read().map_err(|fault: Fault| fault.said(Act::Read, &self.path))
+    }
+
+    /// Returns all readings of check parts and open terminals, of all lots, voided ones too, in the order of writing.
+    ///
+    /// # Errors
+    /// As for [`Log::entries`].
+    pub fn checks(&self) -> Result<Vec<Entry>, LogFailure> {
+        let read = || {
+            let transaction = self.connection.unchecked_transaction()?;
+            let counts = tally::read_anew(&transaction, &self.counts)?;
+            let is_check = |count: &&tally::Count| count.kind != RecordKind::Part;
+            let of_checks = counts.all().iter().filter(is_check);
+            let (n_kinds, n_counted) =
+                of_checks.fold((0, 0), |(n, live), count| (n + 1, live + count.live));
+            // Parts are never read: of all rows only those that void a check or are one matter here.
+            let entries = if n_kinds == 0 {
+                Vec::new()
+            } else {
+                checks(&transaction)?
+            };
+            let n_live = entries.iter().filter(|e| e.voided.is_none()).count();
+            if usize::try_from(n_counted).is_ok_and(|counted| counted == n_live) {
+                Ok(entries)
+            } else {
+                Err(Fault::Damaged(format!(
+                    "{n_live} check readings stand, {n_counted} were counted"
+                )))
+            }
+        };
+        read().map_err(|fault| fault.said(Act::Read, &self.path))
     }
 
     /// Returns one entry, `None` if that number is no entry.
@@ -133,6 +163,22 @@ pub(super) fn newest_first(
     } else {
         Err(Fault::Damaged(format!("entry {expected} is missing")))
     }
+}
+
+fn checks(connection: &Connection) -> Result<Vec<Entry>, Fault> {
+    let mut statement = connection.prepare_cached(&format!(
+        "SELECT {COLUMNS} FROM entry WHERE kind <> 'part' ORDER BY id DESC"
+    ))?;
+    let mut rows = statement.query([])?;
+    let (mut standing, mut profiles) = (Standing::default(), Profiles::default());
+    let mut entries = Vec::new();
+    while let Some(row) = rows.next()? {
+        let row = Row::read(row)?;
+        let voided = standing.pass(&row);
+        entries.extend(profiles.entry(connection, row, voided)?);
+    }
+    entries.reverse();
+    Ok(entries)
 }
 
 /// Returns the row of that number and when it was voided; `None` if there is no such row.

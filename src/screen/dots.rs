@@ -80,6 +80,8 @@ fn sign(role: Role) -> char {
         Role::DialFringe => '=',
         Role::DialExpected => '|',
         Role::DialReading => '*',
+        Role::Caution => 'X',
+        Role::Rule => '-',
         _ => '.',
     }
 }

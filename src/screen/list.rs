@@ -3,10 +3,11 @@
 use ratatui::layout::Position;
 
 use super::bench::{draw_footer, draw_header};
+use super::chart;
 use super::prompt::{self, Asking, Turn};
 use super::sheet::Sheet;
 use super::theme::{Role, sign};
-use crate::app::{ListView, Page, Row, Size, State, Tone, list_height};
+use crate::app::{ListView, Page, Row, Size, State, Tone, chart_height, list_height};
 
 /// Most columns a column of the table takes, the last one excepted.
 const WIDEST: usize = 24;
@@ -20,7 +21,7 @@ pub(super) fn draw(
 ) -> Option<Position> {
     let (width, height) = (sheet.width(), sheet.height());
     draw_header(state, sheet);
-    let rows = list_height(Size { width, height });
+    let rows = list_height(page, Size { width, height });
     let title = format!(
         "{}, {} of {}",
         page.name(),
@@ -67,6 +68,11 @@ pub(super) fn draw(
         if list.top + usize::from(line) == list.selected {
             sheet.mark_row(y, Role::Selected);
         }
+    }
+    if page == Page::Meter {
+        let chart_rows = chart_height(Size { width, height });
+        let y = height.saturating_sub(6 + chart_rows);
+        chart::draw(&mut sheet.part(0, y, width, chart_rows), list.chart());
     }
     draw_details(list, sheet, height.saturating_sub(6));
     if let Some(failed) = state.notice.as_ref().filter(|n| n.tone == Tone::Failed) {

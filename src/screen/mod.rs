@@ -10,6 +10,7 @@ mod bench_finding;
 mod bench_lot;
 mod bench_part;
 mod block_letters;
+mod chart;
 mod dial_face;
 mod dots;
 mod list;

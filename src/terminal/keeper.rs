@@ -75,6 +75,7 @@ impl Keeper {
             ),
             Effect::Look => Event::Looked(self.log.entries(None, Which::Live)),
             Effect::WriteProfile(draft) => Event::ProfileWritten(profile_file::write(&draft)),
+            Effect::LookAtChecks => Event::LookedAtChecks(self.log.checks()),
             Effect::Bell => return None,
         })
     }

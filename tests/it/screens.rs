@@ -90,6 +90,32 @@ fn meter() {
     check_screen("meter", &table.state);
 }
 
+/// A check part read again and again, the meter drifting at the end, one reading wild.
+fn a_meter_that_drifts() -> Table {
+    let readings = [
+        "34", "33.6", "34.2", "34.4", "33.9", "34.1", "36.3", "34", "33.5", "34.6", "34.8", "34.9",
+        "35.1", "35.2", "35.1",
+    ];
+    readings.into_iter().fold(a_lot(), |table, reading| {
+        table.line("check blue 10 nF").line(reading)
+    })
+}
+
+#[test]
+fn meter_that_drifts() {
+    let mut table = a_meter_that_drifts().keys("④");
+    check_screen("meter-drift", &table.state);
+    table.state.look.glyphs = Glyphs::Ascii;
+    check_size("meter-drift-ascii", &table.state, 80, 24);
+    let text = text_of(&drawn(&table.state, 80, 24));
+    assert!(text.is_ascii(), "{text}");
+}
+
+#[test]
+fn bench_when_the_meter_has_moved() {
+    check_screen("bench-moved", &a_meter_that_drifts().state);
+}
+
 #[test]
 fn codes() {
     check_screen("codes", &a_lot().keys("⑤tolerance j").state);

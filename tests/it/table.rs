@@ -83,6 +83,9 @@ impl Table {
                         queue.push_back(Event::Logged(Ok(Box::new(self.append(*record)))));
                     }
                     Effect::Look => queue.push_back(Event::Looked(Ok(self.written.clone()))),
+                    Effect::LookAtChecks => {
+                        queue.push_back(Event::LookedAtChecks(Ok(self.written.clone())));
+                    }
                     _ => {}
                 }
             }
@@ -96,7 +99,7 @@ impl Table {
             id: RecordId(number),
             time: time.fixed_offset(),
             voided: None,
-            profile: "00000000".to_owned(),
+            profile: self.state.setup.profile_hash(),
             record,
         };
         self.written.push(entry.clone());

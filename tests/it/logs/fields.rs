@@ -2,10 +2,10 @@
 
 use chrono::{DateTime, FixedOffset};
 use nulltray::app::{Entry, Outcome, Raw, Record, RecordKind};
-use nulltray::log::{Which, salvage};
+use nulltray::log::{Log, Which, salvage};
 use proptest::prelude::*;
 
-use super::{Folder, open, part, says, time};
+use super::{Folder, PROFILE, open, part, replacing, says, time};
 
 #[test]
 fn odd_numbers_and_times_are_stored_as_documented() {
@@ -179,4 +179,51 @@ fn every_field_comes_back() {
             .filter(|entry| entry.record.kind == RecordKind::Part)
             .count() as u64
     );
+}
+
+#[test]
+fn readings_of_check_parts_are_found_over_all_lots() {
+    let folder = Folder::new();
+    let mut log = open(&folder.log());
+    assert_eq!(log.checks().unwrap(), []);
+    let check = |lot: &str, label: &str, kind| Record {
+        kind,
+        ..part(lot, label, None)
+    };
+    let write = |log: &mut Log, record| log.append(&record, time(0), PROFILE).unwrap();
+    write(&mut log, check("one", "blue", RecordKind::Check));
+    write(&mut log, part("one", "224J", None));
+    let open_terminals = write(&mut log, check("two", "open terminals", RecordKind::Zero));
+    let wrong = write(&mut log, check("two", "grey", RecordKind::Check));
+    log.void(wrong, time(1)).unwrap();
+    let again = check("two", "open terminals", RecordKind::Zero);
+    write(&mut log, replacing(open_terminals, again));
+    let found: Vec<String> = log
+        .checks()
+        .unwrap()
+        .iter()
+        .map(|entry| {
+            let stands = if entry.voided.is_none() {
+                ""
+            } else {
+                " voided"
+            };
+            format!("{} {}{stands}", entry.id, entry.record.raw.marking)
+        })
+        .collect();
+    assert_eq!(
+        found,
+        [
+            "1 blue",
+            "3 open terminals voided",
+            "4 grey voided",
+            "6 open terminals"
+        ]
+    );
+    let all = log.entries(None, Which::All).unwrap();
+    let checks: Vec<Entry> = all
+        .into_iter()
+        .filter(|entry| entry.record.kind != RecordKind::Part)
+        .collect();
+    assert_eq!(log.checks().unwrap(), checks);
 }
