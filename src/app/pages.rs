@@ -1,13 +1,9 @@
 //! What the list screens say: one function a screen, from state to rows.
 
-use super::check_rows::check_rows;
 use super::figures::deviation;
 use super::lists::{ListView, Row};
 use super::lot::{Share, in_tolerances};
-use super::work::known_part;
 use super::{Entry, RecordKind, State, Units};
-use crate::meter::{DialReading, Repeats, Seen, Switch, measure, predict};
-use crate::quantity::{Farad, Fraction};
 
 /// Rows of what was sorted, the latest first.
 pub(super) fn tray(state: &State, entries: &[Entry]) -> ListView {
@@ -74,115 +70,6 @@ fn sorted_row(units: Units, entry: &Entry) -> Row {
         ],
         chart: None,
     }
-}
-
-/// Rows of what each switch of the meter can do, then the check parts, then what they read, the latest first, with the
-/// charts.
-pub(super) fn meter(state: &State) -> ListView {
-    let meter = &state.setup.meter;
-    let mut rows: Vec<Row> = meter.switches().map(|s| switch_row(state, s)).collect();
-    let known = meter.checks.iter().map(|check| {
-        Row::of(vec![
-            "check part".to_owned(),
-            check.label.clone(),
-            state.look.units.write(check.capacitance),
-            format!("±{} (k = 2)", Fraction::new(2.0 * check.uncertainty.get())),
-        ])
-    });
-    rows.extend(known);
-    let (check_rows, charts) = check_rows(&state.checks, state.look.units);
-    rows.extend(check_rows);
-    ListView {
-        charts,
-        ..ListView::new(
-            vec!["what", "which", "reach", "doubt at its best, k = 2"],
-            rows,
-        )
-    }
-}
-
-/// Looks at so many places of the dial of each switch.
-const N_PLACES: u32 = 21;
-
-fn switch_row(state: &State, switch: Switch) -> Row {
-    let meter = &state.setup.meter;
-    let units = state.look.units;
-    let dial = &meter.dial;
-    let places = (0..N_PLACES).map(|n| {
-        let travel = f64::from(n) / f64::from(N_PLACES - 1);
-        DialReading::new(dial.low.get() + travel * (dial.high.get() - dial.low.get()))
-    });
-    let mut reach: Option<(Farad, Farad)> = None;
-    let mut best: Option<(Fraction, String)> = None;
-    let mut lit: Vec<DialReading> = Vec::new();
-    for place in places {
-        let seen = Seen::Middle(Repeats::once(place));
-        let measured = measure(meter, switch, seen, &known_part(Farad::new(1e-9), 0.0));
-        let Some(estimate) = measured.estimate() else {
-            continue;
-        };
-        let value = estimate.capacitance;
-        reach = Some(reach.map_or((value, value), |(low, high)| {
-            (
-                if value < low { value } else { low },
-                if value > high { value } else { high },
-            )
-        }));
-        let doubt = estimate.combined().relative();
-        if best.as_ref().is_none_or(|(least, _)| doubt < *least) {
-            let source = measured.contributions.first();
-            let source = source.map_or_else(String::new, |c| c.source.to_string());
-            best = Some((doubt, source));
-        }
-        if predict(meter, switch, &known_part(value, 0.0))
-            .dark
-            .is_none()
-        {
-            lit.push(place);
-        }
-    }
-    let reach_text = reach.map_or_else(
-        || "nothing".to_owned(),
-        |(low, high)| format!("{} … {}", units.write(low), units.write(high)),
-    );
-    let doubt_text = best.map_or_else(String::new, |(least, source)| {
-        format!("±{}, mostly {source}", Fraction::new(2.0 * least.get()))
-    });
-    let mut details = vec![axis(reach)];
-    if let (Some(first), Some(last)) = (lit.first(), lit.last()) {
-        let (first, last) = (dial.show(*first), dial.show(*last));
-        details.push(if first == last {
-            format!("the lamp cannot go dark at {first}")
-        } else {
-            format!("the lamp cannot go dark from {first} to {last}")
-        });
-    }
-    Row {
-        details,
-        ..Row::of(vec![
-            "switch".to_owned(),
-            meter.label(switch).to_owned(),
-            reach_text,
-            doubt_text,
-        ])
-    }
-}
-
-/// Draws the reach of a switch on a logarithmic axis from 1 pF to 1 mF, six characters a decade.
-fn axis(reach: Option<(Farad, Farad)>) -> String {
-    const A_DECADE: f64 = 6.0;
-    let place = |c: Farad| (c.picofarads().max(1.0).log10() * A_DECADE).round();
-    let marks: String = (0..=54)
-        .map(|column| {
-            let column = f64::from(column);
-            match reach {
-                Some((low, high)) if place(low) <= column && column <= place(high) => '━',
-                _ if (column % (3.0 * A_DECADE)).abs() < 0.5 => '┼',
-                _ => '─',
-            }
-        })
-        .collect();
-    format!("1 pF {marks} 1 mF")
 }
 
 /// Rows of the code tables.
@@ -312,18 +199,5 @@ mod tests {
                 "above +2: 1"
             ]
         );
-    }
-
-    #[test]
-    fn a_switch_is_drawn_where_it_reaches() {
-        let line = axis(Some((Farad::new(1e-9), Farad::new(1e-8))));
-        let bar: Vec<usize> = line
-            .chars()
-            .skip(5)
-            .enumerate()
-            .filter(|(_, c)| *c == '━')
-            .map(|(index, _)| index)
-            .collect();
-        assert_eq!((bar.first(), bar.last()), (Some(&18), Some(&24)));
     }
 }

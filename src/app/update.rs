@@ -10,7 +10,7 @@ use super::state::{
     Bench, Effect, Event, Front, Last, Notice, Opening, Size, State, Tone, Warning,
 };
 use super::{Entry, Intent, Key, LogFailure, Lot, Page, RecordKind, Standing};
-use super::{bench, describing, earlier, expecting, help};
+use super::{bench, describing, earlier, expecting, help, meter_rows};
 
 /// Makes the state the program starts with; Enter alone repeats the last marking of the lot.
 pub fn open(opening: Opening) -> State {
@@ -93,7 +93,7 @@ pub fn update(state: &mut State, event: Event) -> Vec<Effect> {
         Event::LookedAtChecks(Ok(entries)) => {
             state.checks = Checks::new(entries);
             if matches!(state.front, Front::Meter(_)) {
-                state.front = Front::Meter(pages::meter(state));
+                state.front = Front::Meter(meter_rows::meter(state));
             }
             Vec::new()
         }
@@ -300,7 +300,7 @@ fn show(state: &mut State, page: Page) -> Vec<Effect> {
         Page::Bench => Front::Bench,
         Page::NewMeter => Front::NewMeter,
         Page::Tray => Front::Tray(pages::tray(state, &state.lot.entries)),
-        Page::Meter => Front::Meter(pages::meter(state)),
+        Page::Meter => Front::Meter(meter_rows::meter(state)),
         Page::Codes => Front::Codes(pages::codes(state)),
         Page::Lot => Front::Lot(pages::lot(state)),
         Page::Help => match &state.front {

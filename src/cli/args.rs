@@ -227,12 +227,24 @@ pub(super) enum LogCommand {
     Undo,
     /// Bring back the entry taken back last
     Redo,
+    /// Judge the entries again with the meter and tray in force, and show what would change
+    Rejudge(RejudgeArgs),
     /// Copy a log, even one in use, to a new file
     Backup {
         /// The copy; must not exist yet
         #[arg(value_name = "FILE")]
         file: PathBuf,
     },
+}
+
+#[derive(Args, Debug)]
+pub(super) struct RejudgeArgs {
+    /// Write the new findings: each as a new entry in place of the first one, which stays in the log
+    #[arg(long)]
+    pub(super) write: bool,
+    /// Write JSON
+    #[arg(long)]
+    pub(super) json: bool,
 }
 
 /// How the log is exported.

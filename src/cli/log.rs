@@ -12,9 +12,9 @@ use super::args::{ExportFormat, LogArgs, LogCommand, Places};
 use super::columns::INPUTS;
 use super::failure::{Failure, FailureKind, Finish};
 use super::harmless::line;
-use super::setup;
 use super::sheet::{Cell, Form, OUTPUTS, Sheet, output_cells, text_cell, typed_cell};
-use crate::app::{Entry, LogFailure, Raw, RecordKind, search};
+use super::{rejudge, setup};
+use crate::app::{Entry, LogFailure, Outcome, Raw, RecordKind, search};
 use crate::log::{Log, Salvage, Which, salvage};
 use crate::quantity::{Farad, Uncertain};
 
@@ -50,6 +50,7 @@ pub(super) fn run(
             let entry = existing(&path)?.redo(&lot, now())?;
             tell("brought back", entry.as_ref(), &lot, streams.stdout)
         }
+        LogCommand::Rejudge(args) => rejudge::run(args, places, streams),
         LogCommand::Backup { file } => {
             Log::open_read_only(&path)?.backup(file)?;
             writeln!(
@@ -64,13 +65,14 @@ pub(super) fn run(
 }
 
 /// Opens a log to change it, but makes none.
-fn existing(path: &Path) -> Result<Log, Failure> {
+pub(super) fn existing(path: &Path) -> Result<Log, Failure> {
     drop(Log::open_read_only(path)?);
     let (log, _) = Log::open(path)?;
     Ok(log)
 }
 
-fn now() -> DateTime<FixedOffset> {
+/// The time, in milliseconds.
+pub(super) fn now() -> DateTime<FixedOffset> {
     Local::now().fixed_offset().trunc_subsecs(3)
 }
 
@@ -221,7 +223,8 @@ fn raw_cells(raw: &Raw) -> [Cell<'_>; INPUTS.len()] {
     ]
 }
 
-fn subject(entry: &Entry) -> Cow<'_, str> {
+/// Returns what was measured.
+pub(super) fn subject(entry: &Entry) -> Cow<'_, str> {
     let marking = line(&entry.record.raw.marking);
     match entry.record.kind {
         RecordKind::Part => marking,
@@ -246,8 +249,7 @@ fn reading(raw: &Raw) -> String {
 }
 
 /// Value and expanded uncertainty, as far as there are any.
-fn value(entry: &Entry) -> String {
-    let outcome = &entry.record.outcome;
+pub(super) fn value(outcome: &Outcome) -> String {
     match (outcome.capacitance_pf, outcome.uncertainty_pf) {
         (Some(value), Some(uncertainty)) => Uncertain {
             value: Farad::from_picofarads(value),
@@ -283,7 +285,7 @@ fn write_table(stdout: &mut dyn Write, entries: &[&Entry]) -> std::io::Result<()
             subject(entry).into_owned(),
             line(&record.raw.switch).into_owned(),
             line(&reading(&record.raw)).into_owned(),
-            value(entry),
+            value(&record.outcome),
             line(&record.outcome.finding).into_owned(),
             line(record.outcome.compartment.as_deref().unwrap_or("-")).into_owned(),
         ]

@@ -3,7 +3,7 @@
 //! ```text
 //! args      the command line            setup    profile, tray and log: which, where, read and checked
 //! bench     what the bench and `line` start with
-//! decode, predict, marks, judge, calibrate, coverage, check, log    one file a command
+//! decode, predict, marks, judge, calibrate, coverage, check, log, rejudge    one file a command
 //! columns, row, references              a CSV of readings: its header, its rows
 //! sheet, shapes, number, harmless       what is written: CSV and JSON tables, JSON objects, numbers, text of others
 //! failure                               why a command could not do its work, and the exit code
@@ -30,6 +30,7 @@ mod number;
 mod output;
 mod predict;
 mod references;
+mod rejudge;
 mod row;
 mod setup;
 mod shapes;

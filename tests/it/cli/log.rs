@@ -167,3 +167,129 @@ fn a_damaged_log_is_exported_as_far_as_it_can_be_read() {
     "#]]
     .assert_eq(&folder.run(&["check", &log], b""));
 }
+
+/// Lines typed at `line`: parts of every finding, and a check part.
+const TYPED: &str = "224J\n20.3\n\n20.9\n472J\n93.0\n104K\n55.1\ncheck blue 10 nF\n34\n224J\n10\n";
+
+/// The example meter without its calibration, in a file, with something replaced.
+fn meter(folder: &Folder, name: &str, from: &str, to: &str) -> String {
+    let text = include_str!("../../../data/example-meter.toml").replace(from, to);
+    let text = text.split("[calibration]").next().unwrap_or_default();
+    fs::write(folder.0.join(name), text).expect("a profile");
+    folder.file(name)
+}
+
+#[test]
+fn entries_are_judged_again_with_another_meter() {
+    let folder = Folder::new("rejudge");
+    let log = folder.file("parts.db");
+    let tray = Path::new(env!("CARGO_MANIFEST_DIR")).join("tests/data/screen-tray.toml");
+    let tray = tray.to_str().expect("UTF-8").to_owned();
+    let first = meter(&folder, "first.toml", "", "");
+    let say = |meter: &str, arguments: &[&str]| {
+        let places = ["--log", &log, "--meter", meter, "--tray", &tray];
+        let said = folder.run(&[&places, arguments].concat(), TYPED.as_bytes());
+        said.lines()
+            .filter(|line| !line.starts_with("! "))
+            .fold(String::new(), |text, line| text + line + "\n")
+    };
+    expect![[r#"
+        saved 1 inside B3
+        saved 2 inside B3
+        saved 3 outside D6
+        saved 4 inside B3
+        saved 5 inside -
+        saved 6 outside D6
+        exit 0
+    "#]]
+    .assert_eq(&say(&first, &["--lot", "hut 4", "line"]));
+    expect![[r#"
+        nothing would change, of 6 entries
+        exit 0
+    "#]]
+    .assert_eq(&say(&first, &["log", "rejudge"]));
+    let second = meter(&folder, "second.toml", "300 Ω", "330 Ω");
+    expect![[r#"
+        id  lot    marking  finding              value (k = 2)                            place
+        1   hut 4  224J     inside -> undecided  219.8 nF ± 10.8 nF -> 199.8 nF ± 9.8 nF  B3 -> D5
+        2   hut 4  224J     inside -> undecided  226.2 nF ± 10.9 nF -> 205.6 nF ± 9.9 nF  B3 -> D5
+        6   hut 4  224J     outside              109.9 nF ± 9.3 nF -> 99.9 nF ± 8.5 nF    D6
+        3 of 6 entries would change: 2 by finding, 3 by value, 2 by place
+        nothing is written; with --write each becomes a new entry, and the first one stays in the log
+        exit 0
+    "#]].assert_eq(&say(&second, &["log", "rejudge"]));
+    expect![[r#"
+        {"entries":6,"unchanged":3,"written":false,"changes":[{"id":1,"new_id":null,"lot":"hut 4","marking":"224J","finding_before":"inside","finding_after":"undecided","capacitance_before_pF":219785.826117,"capacitance_after_pF":199804.023743,"compartment_before":"B3","compartment_after":"D5"},{"id":2,"new_id":null,"lot":"hut 4","marking":"224J","finding_before":"inside","finding_after":"undecided","capacitance_before_pF":226200.24565,"capacitance_after_pF":205635.314227,"compartment_before":"B3","compartment_after":"D5"},{"id":6,"new_id":null,"lot":"hut 4","marking":"224J","finding_before":"outside","finding_after":"outside","capacitance_before_pF":109879.722377,"capacitance_after_pF":99889.3839791,"compartment_before":"D6","compartment_after":"D6"}],"left":[]}
+        exit 0
+    "#]].assert_eq(&say(&second, &["log", "rejudge", "--json"]));
+    let renamed = meter(&folder, "renamed.toml", "label = \"C\"", "label = \"fine\"");
+    expect![[r#"
+        3 472J is left as it is: this meter has no switch C
+        5 check part blue 10 nF is left as it is: this meter has no switch C
+        nothing would change, of 6 entries
+        exit 1
+    "#]]
+    .assert_eq(&say(&renamed, &["log", "rejudge", "--lot", "hut 4"]));
+    expect![[r#"
+        {"entries":6,"unchanged":4,"written":false,"changes":[],"left":[{"id":3,"lot":"hut 4","marking":"472J","reason":"this meter has no switch C"},{"id":5,"lot":"hut 4","marking":"blue 10 nF","reason":"this meter has no switch C"}]}
+        exit 1
+    "#]]
+    .assert_eq(&say(&renamed, &["log", "rejudge", "--json"]));
+    let before = say(&first, &["log", "export"]);
+    expect![[r#"
+        id  lot    marking  finding              value (k = 2)                            place
+        1   hut 4  224J     inside -> undecided  219.8 nF ± 10.8 nF -> 199.8 nF ± 9.8 nF  B3 -> D5
+        2   hut 4  224J     inside -> undecided  226.2 nF ± 10.9 nF -> 205.6 nF ± 9.9 nF  B3 -> D5
+        6   hut 4  224J     outside              109.9 nF ± 9.3 nF -> 99.9 nF ± 8.5 nF    D6
+        3 of 6 entries would change: 2 by finding, 3 by value, 2 by place
+        written: 7 to 9, in place of the first ones, which stay in the log
+        2 parts lie in other places than they should: move them
+        exit 0
+    "#]]
+    .assert_eq(&say(&second, &["log", "rejudge", "--write"]));
+    expect![[r#"
+        nothing would change, of 6 entries
+        exit 0
+    "#]]
+    .assert_eq(&say(&second, &["log", "rejudge", "--write"]));
+    let after = say(&second, &["log", "export"]);
+    let kept = |text: &str| -> Vec<String> {
+        let columns = text.lines().map(|line| line.split(',').enumerate());
+        // Of the first entries only the time at which they were replaced may differ.
+        columns
+            .take(7)
+            .map(|cells| {
+                let cells: Vec<&str> = cells.filter(|(n, _)| *n != 3).map(|c| c.1).collect();
+                cells.join(",")
+            })
+            .collect()
+    };
+    assert_eq!(kept(&before), kept(&after), "nothing is erased");
+    expect![[r#"
+        DIR/parts.db: log, undamaged
+        exit 0
+    "#]]
+    .assert_eq(&folder.run(&["check", &log], b""));
+    expect![[r#"
+        taken back: 9 224J, outside
+        exit 0
+    "#]]
+    .assert_eq(&say(&second, &["log", "undo", "--lot", "hut 4"]));
+    expect![[r#"
+        exit 1
+    "#]]
+    .assert_eq(&say(&first, &["log", "rejudge", "--lot", "hut 5"]));
+}
+
+#[test]
+fn judging_again_makes_no_log() {
+    let folder = Folder::new("rejudge-none");
+    let log = folder.file("absent.db");
+    expect![[r#"
+        ! cannot open DIR/absent.db: there is no such file
+        !   check the path
+        exit 3
+    "#]]
+    .assert_eq(&folder.run(&["--log", &log, "log", "rejudge", "--write"], b""));
+    assert!(!folder.0.join("absent.db").exists());
+}
