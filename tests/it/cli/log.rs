@@ -293,3 +293,46 @@ fn judging_again_makes_no_log() {
     .assert_eq(&folder.run(&["--log", &log, "log", "rejudge", "--write"], b""));
     assert!(!folder.0.join("absent.db").exists());
 }
+
+#[test]
+fn lines_say_whether_the_meter_has_moved_over_all_lots() {
+    let folder = Folder::new("moved");
+    let (log, meter) = (
+        folder.file("parts.db"),
+        meter(&folder, "meter.toml", "", ""),
+    );
+    let say = |lot: &str, typed: &str| {
+        let places = ["--log", &log, "--meter", &meter, "--lot", lot, "line"];
+        let said = folder.run(&places, typed.as_bytes());
+        let told = ["saved", "agrees", "moved", "in doubt"];
+        let lines = said.lines();
+        let told = lines.filter(|line| told.iter().any(|word| line.contains(word)));
+        // The time of the good check is that of the test.
+        let told = told.map(|line| {
+            let parts = line.split_once("parts since ");
+            let parts =
+                parts.and_then(|(head, rest)| Some((head, rest.split_once(" in doubt (")?)));
+            match parts {
+                Some((head, (_, rest))) => format!("{head}parts since TIME in doubt ({rest}"),
+                None => line.to_owned(),
+            }
+        });
+        told.collect::<Vec<_>>().join("\n")
+    };
+    expect![[r#"
+        saved 1 inside -
+        saved 2 outside -
+        ! the meter has moved: all parts so far in doubt: no earlier check agreed; +14.1 standard uncertainties from 10.02 nF; look at battery, leads and lamp, then calibrate
+        ! in doubt in this lot: part 1"#]].assert_eq(&say("hut 4", "224J\n20.3\ncheck blue 10 nF\n45\n"));
+    expect![[r#"
+        saved 3 inside -
+        saved 4 inside -
+        ! the meter agrees: -0.2 standard uncertainties from 10.02 nF"#]]
+    .assert_eq(&say("hut 5", "224J\n20.3\ncheck blue 10 nF\n34\n"));
+    expect![[r#"
+        saved 5 inside -
+        saved 6 inside -
+        saved 7 outside -
+        ! the meter has moved: parts since TIME in doubt (entries after 4); +14.1 standard uncertainties from 10.02 nF; look at battery, leads and lamp, then calibrate
+        ! in doubt in this lot: parts 1 to 2"#]].assert_eq(&say("hut 6", "224J\n20.3\n\n20.2\ncheck blue 10 nF\n45\n"));
+}
