@@ -71,7 +71,11 @@ pub fn decode(text: &str, family: Option<Family>) -> Decoding {
     let mut masses = Masses::default();
     let beam = beam::search(&scan, &LEXICON, family);
     masses.add_unknown(scan.n_visible());
-    let completions = variants::completions(&scan);
+    let completions = if rule_colour::starts(&scan, &LEXICON) {
+        Vec::new()
+    } else {
+        variants::completions(&scan)
+    };
     let add =
         |more: Vec<Variant>, weight: f64, variants: &mut Vec<Variant>, masses: &mut Masses| {
             for variant in more {

@@ -6,17 +6,19 @@
 //! tip     = colour ("tip" | "dot" …)      "violet tip": the coefficient of a ceramic part
 //! ```
 //! Words such as `wide`, `spot` or `dot` may stand between. A wide band may be two equal ones side by side, so both are
-//! tried. Every order of bands with so many of them (`colour-systems.toml`) is proposed, read from either end.
+//! tried. A `?` behind the first colour is a colour that could not be read: all are tried. Every order of bands with so many of them (`colour-systems.toml`) is proposed, read from either end.
 
 use super::Role;
 use super::compile_colours::{LONGEST, Says, System, key};
 use super::lexicon::Lexicon;
 use super::piece::{Amount, Form, Inner, Meaning, Pieces, Voltage};
-use super::scan::{Scan, Sort};
+use super::scan::{Scan, Sort, UNREADABLE};
 use crate::tables::{BandUse, TABLES, VoltageKind};
 
 const MOST_BANDS: usize = 8;
 const LEAST_BANDS: usize = 3;
+/// A colour that could not be read.
+const UNKNOWN: u8 = u8::MAX;
 type Cells = (usize, usize);
 
 /// Colours as typed.
@@ -46,7 +48,8 @@ pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mu
         two.list.insert(wide, band);
         doubled = Some(two);
     }
-    for typed in [Some(&typed), doubled.as_ref()].into_iter().flatten() {
+    let ways = [Some(typed), doubled].into_iter().flatten();
+    for (typed, share) in ways.flat_map(|typed| completed(typed, lexicon)) {
         if !(LEAST_BANDS..=MOST_BANDS).contains(&typed.list.len()) {
             continue;
         }
@@ -56,16 +59,38 @@ pub(super) fn propose(scan: &Scan<'_>, at: usize, lexicon: &Lexicon, pieces: &mu
             }
             let forward: Vec<(Cells, u8)> = typed.list.clone();
             let backward: Vec<(Cells, u8)> = typed.list.iter().rev().copied().collect();
-            read(&forward, &typed.others, system, 1.0, lexicon, pieces);
+            read(&forward, &typed.others, system, share, lexicon, pieces);
             if forward
                 .iter()
                 .map(|band| band.1)
                 .ne(backward.iter().map(|band| band.1))
             {
-                read(&backward, &typed.others, system, reversed, lexicon, pieces);
+                let share = share * reversed;
+                read(&backward, &typed.others, system, share, lexicon, pieces);
             }
         }
     }
+}
+
+/// Returns whether a marking starts with a colour, so that a `?` in it stands for a colour.
+pub(super) fn starts(scan: &Scan<'_>, lexicon: &Lexicon) -> bool {
+    colour(scan, scan.after_blanks(0), lexicon).is_some()
+}
+
+/// Returns the bands with an unreadable one tried as every colour; of several only the first is.
+fn completed(typed: Bands, lexicon: &Lexicon) -> Vec<(Bands, f64)> {
+    let Some(place) = typed.list.iter().position(|band| band.1 == UNKNOWN) else {
+        return vec![(typed, 1.0)];
+    };
+    let n_colours = lexicon.colours.n_colours;
+    let with = |colour: u8| {
+        let mut typed = typed.clone();
+        if let Some(band) = typed.list.get_mut(place) {
+            band.1 = colour;
+        }
+        (typed, 1.0 / f64::from(n_colours))
+    };
+    (0..n_colours).map(with).collect()
 }
 
 /// Proposes the coefficient that a coloured tip or dot stands for: "violet tip".
@@ -123,6 +148,8 @@ fn bands(scan: &Scan<'_>, at: usize, lexicon: &Lexicon) -> Bands {
             typed.list.push(((cell, end), colour));
         } else if scan.at(cell) == b'-' && between(cell.wrapping_sub(1)) && between(end) {
             typed.list.push(((cell, end), colours.none));
+        } else if scan.at(cell) == UNREADABLE && between(cell.wrapping_sub(1)) && between(end) {
+            typed.list.push(((cell, end), UNKNOWN));
         } else if sort == Sort::Sign
             && matches!(scan.at(cell), b',' | b'/' | b'-' | b'+' | b';' | b':')
         {
@@ -258,6 +285,22 @@ mod tests {
     #[test]
     fn mica_with_six_dots() {
         check("white, brown, red / -, red, red", "1.2 nF ±2 %");
+    }
+
+    #[test]
+    fn a_band_that_cannot_be_read() {
+        let decoding = decode("brown black ? white red", None);
+        let values: Vec<String> = decoding
+            .readings
+            .iter()
+            .map(|one| one.capacitance.to_string())
+            .collect();
+        for value in ["10 nF", "100 nF", "1 µF"] {
+            assert!(
+                values.iter().any(|found| found == value),
+                "{value} in {values:?}"
+            );
+        }
     }
 
     #[test]
