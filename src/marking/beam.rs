@@ -48,12 +48,12 @@ pub(super) fn search<'a, 't>(
         scan,
         lexicon,
         factors: &TABLES.ranking.factors,
-        paths: Vec::with_capacity(48),
+        paths: Vec::with_capacity(56),
         heads: [START; MOST_CELLS + 1],
-        steps: Vec::with_capacity(48),
+        steps: Vec::with_capacity(56),
     };
     let mut pieces = Pieces {
-        list: Vec::with_capacity(64),
+        list: Vec::with_capacity(24),
         sections: Vec::new(),
     };
     search.add(scan.after_blanks(0), Path::first(lexicon, given));

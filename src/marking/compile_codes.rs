@@ -256,20 +256,20 @@ fn systems() -> Vec<(&'static str, Vec<&'static CharacteristicMark>)> {
     systems
 }
 
-/// The two letters of military limits: temperature range, then limits; only inside of part numbers, so lower-case keyed.
+/// The two letters of military limits: temperature range, then limits. They are read inside of part numbers only, so that
+/// their keys end in a glyph of their own.
 fn limits(making: &mut Making<'_>, codes: &mut HashMap<[u8; 3], u16>) {
-    let rows = TABLES
-        .military_marks()
-        .filter(|row| row.field == Field::Limits);
-    for row in rows {
-        for first in ['A', 'B', 'C'] {
-            let place = making.word(
-                &format!("{first}{}", row.mark),
-                &row.says,
-                &[],
-                Stands::Apart,
-            );
-            codes.insert([glyph(first), glyph(row.mark), b'!'], place);
+    let of = |field: Field| {
+        TABLES
+            .military_marks()
+            .filter(move |row| row.field == field)
+    };
+    for range in of(Field::LimitsRange) {
+        for limits in of(Field::Limits) {
+            let name = format!("{}{}", range.mark, limits.mark);
+            let says = format!("{}, {}", range.says, limits.says);
+            let place = making.word(&name, &says, &[], Stands::Apart);
+            codes.insert([glyph(range.mark), glyph(limits.mark), b'!'], place);
         }
     }
 }

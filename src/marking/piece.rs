@@ -115,8 +115,14 @@ pub(super) struct Amount {
     unit: u32,
 }
 
+/// The powers of ten that a double holds exactly: more than any notation has.
+const EXACT_POWERS: [f64; 23] = [
+    1e0, 1e1, 1e2, 1e3, 1e4, 1e5, 1e6, 1e7, 1e8, 1e9, 1e10, 1e11, 1e12, 1e13, 1e14, 1e15, 1e16,
+    1e17, 1e18, 1e19, 1e20, 1e21, 1e22,
+];
+
 /// Farads below which a tolerance letter says a capacitance (IEC 60062).
-const SMALL_FARADS: f64 = 10e-12;
+pub(super) const SMALL_FARADS: f64 = 10e-12;
 
 /// A unit that is a power of ten of the farad.
 pub(super) const WHOLE_UNIT: u32 = 100_000;
@@ -156,11 +162,16 @@ impl Amount {
         if self.unit != WHOLE_UNIT {
             digits *= f64::from(self.unit) / f64::from(WHOLE_UNIT);
         }
-        let exponent = i32::from(self.exponent);
-        Farad::new(if exponent < 0 {
-            digits / 10f64.powi(-exponent)
+        let power = |n: u8| {
+            EXACT_POWERS
+                .get(usize::from(n))
+                .copied()
+                .unwrap_or(f64::INFINITY)
+        };
+        Farad::new(if self.exponent < 0 {
+            digits / power(self.exponent.unsigned_abs())
         } else {
-            digits * 10f64.powi(exponent)
+            digits * power(self.exponent.unsigned_abs())
         })
     }
 

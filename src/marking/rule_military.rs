@@ -118,7 +118,7 @@ fn read(
         Some((at + 2, Meaning::Word(row), word.evidence))
     };
     match field {
-        Field::Limits => pair(b'!'),
+        Field::Limits | Field::LimitsRange => pair(b'!'),
         Field::Coefficient => pair(b' '),
         Field::Value => {
             let (amount, end) = value(scan, at, lexicon)?;

@@ -4,7 +4,7 @@ use super::RatedVoltage;
 use super::beam::Beam;
 use super::lexicon::View;
 use super::path::{NONE, Path};
-use super::piece::{Amount, Date, Meaning, Voltage};
+use super::piece::{Amount, Date, Meaning, SMALL_FARADS, Voltage};
 use crate::quantity::{Farad, Tolerance, Volt};
 use crate::tables::{Factors, KINDS, Ranking, SeriesShares, ToleranceShares, VoltageKind};
 
@@ -56,7 +56,7 @@ pub(super) fn weigh(
     let (lexicon, factors) = (beam.lexicon, &ranking.factors);
     let capacitance = value.farads().get();
     let mut weight = path.weight;
-    let tolerance = tolerance(beam, path, value, factors, &mut weight);
+    let tolerance = tolerance(beam, path, capacitance, factors, &mut weight);
     let is_marked = path.slots.tolerance != NONE;
     let shares = series_shares(ranking, tolerance.filter(|_| is_marked), capacitance);
     let mut series = shares.of(lexicon.series_of(value.mantissa()));
@@ -179,12 +179,11 @@ fn usual(beam: &Beam<'_, '_>, path: &Path, marks: &Marks, ranking: &Ranking) -> 
 fn tolerance(
     beam: &Beam<'_, '_>,
     path: &Path,
-    value: Amount,
+    capacitance: f64,
     factors: &Factors,
     weight: &mut f64,
 ) -> Option<Tolerance> {
-    let capacitance = value.farads().get();
-    let is_small = value.is_below_ten_picofarads();
+    let is_small = capacitance < SMALL_FARADS;
     let tolerance = match beam.piece(path.slots.tolerance)?.meaning {
         Meaning::Limits(limits) => Some(limits),
         Meaning::Letter(row) => {

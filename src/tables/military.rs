@@ -24,6 +24,8 @@ plain_row! {
 pub enum Field {
     /// Two letters: temperature range, limits with temperature and voltage.
     Limits,
+    /// The first of these two letters: the temperature range.
+    LimitsRange,
     /// Two letters: coefficient and its tolerance.
     Coefficient,
     /// Three digits, or R for the point.
