@@ -35,28 +35,25 @@ pub(super) fn meter(state: &State) -> ListView {
     rows.extend(check_rows);
     ListView {
         charts,
-        ..ListView::new(
-            vec!["what", "which", "reach", "doubt at its best, k = 2"],
-            rows,
-        )
+        ..ListView::new(vec!["what", "which", "reach", "least doubt, k = 2"], rows)
     }
 }
 
 fn switch_row(meter: &Meter, units: Units, switch: &SwitchCoverage) -> Row {
     let (low, high) = switch.span;
     let doubt = switch.best.map_or_else(String::new, |best| {
-        format!(
-            "±{}, mostly {}",
-            Fraction::new(2.0 * best.get()),
-            largest_doubt(meter, switch)
-        )
+        format!("±{}", Fraction::new(2.0 * best.get()))
     });
-    let mut details = vec![axis(switch.span, switch.useful)];
     let useful = format!("to ±{} (k = 2) or better", Fraction::new(2.0 * USEFUL));
-    details.push(switch.useful.map_or_else(
+    let useful = switch.useful.map_or_else(
         || format!("nowhere {useful}"),
         |(from, to)| format!("{useful}: {} … {}", units.write(from), units.write(to)),
-    ));
+    );
+    let source = largest_doubt(meter, switch);
+    let mut details = vec![
+        axis(switch.span, switch.useful),
+        format!("{useful}; at its best the doubt is mostly {source}"),
+    ];
     if let Some((from, to)) = switch.never_dark {
         let (from, to) = (meter.dial.show(from), meter.dial.show(to));
         details.push(format!("the lamp cannot go dark from {from} to {to}"));
