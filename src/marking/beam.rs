@@ -15,9 +15,9 @@ use crate::tables::{Factors, Family, TABLES};
 /// How many paths go on from a cell.
 const WIDTH: usize = 16;
 /// Paths that are this much less probable than the best of their cell, of those with or without a value, end there.
-const HOPELESS: f64 = 3e-5;
+const HOPELESS: f64 = 2e-4;
 /// The same at the end of the text, where nothing can come to their help but a better value.
-const LATE: f64 = 5e-4;
+const LATE: f64 = 1e-3;
 
 #[derive(Clone, Copy)]
 struct Step {
@@ -235,14 +235,16 @@ impl Search<'_, '_> {
             return;
         }
         path.weight *= piece.weight;
-        // What contradicts the rest says nothing of the kind of part.
-        let contradicts = path.slots.contradicts != from.slots.contradicts;
-        let evidence = Some(piece.evidence).filter(|_| !contradicts);
-        if let Some(reason) = evidence.and_then(|evidence| self.lexicon.reason(evidence)) {
-            path.kinds
-                .iter_mut()
-                .zip(&reason.on)
-                .for_each(|(kind, on)| *kind *= on);
+        if let Some(reason) = self.lexicon.reason(piece.evidence) {
+            if path.slots.contradicts == from.slots.contradicts {
+                path.kinds
+                    .iter_mut()
+                    .zip(&reason.on)
+                    .for_each(|(kind, on)| *kind *= on);
+            } else {
+                // What contradicts the rest says nothing of the kind of part; it is as rare as where it is usual.
+                path.weight *= reason.on.iter().copied().fold(0.0, f64::max);
+            }
         }
         path.mass = path.weight * path.kinds.iter().sum::<f64>();
         if path.mass <= 0.0 {

@@ -21,7 +21,7 @@ pub(super) struct Colours {
     /// The orders of bands.
     pub(super) systems: Vec<System>,
     /// How many colours there are.
-    pub(super) n_colours: u8,
+    pub(super) count: u8,
     /// The colour of a band that is not there.
     pub(super) none: u8,
     /// The column of coloured tips.
@@ -120,7 +120,7 @@ pub(super) fn colours(
             .collect(),
         says,
         systems,
-        n_colours: u8::try_from(names.len()).unwrap_or(0),
+        count: u8::try_from(names.len()).unwrap_or(0),
         none: place(&names, "none"),
         tip: place(&columns, "tip"),
         wide: place(&names, "wide"),

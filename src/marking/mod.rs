@@ -9,7 +9,8 @@
 //! The text is folded to one byte a character (`scan`), rules look at one place of it and propose pieces with a meaning
 //! (`piece`), a beam joins pieces from left to right (`beam`), and what is usual for each kind of part decides between the
 //! ways that reach the end (`rank`). Every number in that decision is a row of `data/ranking.toml`. So a new notation is a
-//! rule, and no rule knows of another.
+//! rule, and no rule knows of another. Marks that depend on each other (the fields of a part number, bands in one order) are
+//! proposed as one group. [`marks`] goes the other way, from a part to its likely markings (`print`).
 //!
 //! Bounds: the first 96 characters are looked at, what stands behind them is listed as unexplained; 16 paths go on from
 //! each character; 50 readings are given. How unreadable characters, look-alikes and turned parts are bounded is said in

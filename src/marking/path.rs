@@ -106,7 +106,7 @@ impl Path {
             Meaning::Date(date) => match meaning_of(self.slots.date) {
                 None => self.slots.date = place,
                 Some(Meaning::Date(other)) if other == date => self.weight *= factors.repeated,
-                Some(_) => return self.contradict(place, factors),
+                Some(_) => return self.contradict(place, factors.contradicts),
             },
             Meaning::Group(first, n) => {
                 for place in first..first + u16::from(n) {
@@ -127,7 +127,7 @@ impl Path {
                 } else if meaning_of(self.slots.tolerance) == Some(piece.meaning) {
                     self.weight *= factors.repeated;
                 } else {
-                    return self.contradict(place, factors);
+                    return self.contradict(place, factors.contradicts);
                 }
             }
             Meaning::Voltage(voltage) => {
@@ -150,11 +150,11 @@ impl Path {
 
     /// Notes a contradiction; returns whether that is possible. One a path: what runs on behind a marking is unexplained
     /// rather than a chain of contradictions.
-    fn contradict(&mut self, place: u16, factors: &Factors) -> bool {
+    fn contradict(&mut self, place: u16, weight: f64) -> bool {
         if self.slots.contradicts != NONE {
             return false;
         }
-        self.weight *= factors.contradicts;
+        self.weight *= weight;
         self.slots.contradicts = place;
         true
     }
@@ -179,10 +179,10 @@ impl Path {
                     // A mere number beside another voltage is something else.
                     return false;
                 } else {
-                    return self.contradict(place, factors);
+                    return self.contradict(place, factors.contradicts);
                 }
             }
-            [Some(_), Some(_)] => return self.contradict(place, factors),
+            [Some(_), Some(_)] => return self.contradict(place, factors.contradicts),
         }
         true
     }
@@ -193,7 +193,7 @@ impl Path {
         };
         if word.characteristic.is_some() {
             if self.slots.characteristic != NONE {
-                return self.contradict(place, factors);
+                return self.contradict(place, factors.contradicts_word);
             }
             self.slots.characteristic = place;
         }
@@ -207,7 +207,7 @@ impl Path {
             .zip(&word.kinds)
             .for_each(|(kind, fits)| *kind *= fits);
         if !agrees || narrowed.iter().all(|&kind| kind <= 0.0) {
-            return self.contradict(place, factors);
+            return self.contradict(place, factors.contradicts_word);
         }
         self.kinds = narrowed;
         let family = self
@@ -229,7 +229,7 @@ impl Path {
         } else if *slot == digit {
             self.weight *= factors.repeated;
         } else {
-            return self.contradict(place, factors);
+            return self.contradict(place, factors.contradicts);
         }
         true
     }

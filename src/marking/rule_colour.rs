@@ -82,15 +82,15 @@ fn completed(typed: Bands, lexicon: &Lexicon) -> Vec<(Bands, f64)> {
     let Some(place) = typed.list.iter().position(|band| band.1 == UNKNOWN) else {
         return vec![(typed, 1.0)];
     };
-    let n_colours = lexicon.colours.n_colours;
+    let count = lexicon.colours.count;
     let with = |colour: u8| {
         let mut typed = typed.clone();
         if let Some(band) = typed.list.get_mut(place) {
             band.1 = colour;
         }
-        (typed, 1.0 / f64::from(n_colours))
+        (typed, 1.0 / f64::from(count))
     };
-    (0..n_colours).map(with).collect()
+    (0..count).map(with).collect()
 }
 
 /// Proposes the coefficient that a coloured tip or dot stands for: "violet tip".

@@ -143,6 +143,7 @@ factors!(
     percent_below_ten_picofarads: "A relative tolerance letter below 10 pF.",
     wide_absolute: "A half width above half the value.",
     contradicts: "Two marks that contradict each other.",
+    contradicts_word: "A whole word that contradicts another.",
     repeated: "The same said twice.",
     separator: "A separating sign.",
     unexplained_figures: "Figures left unexplained.",

@@ -241,6 +241,15 @@ fn a_second_tolerance_is_named() {
         "{:?}",
         best.why
     );
+    let decoding = decode("100n X7R Y5V", None);
+    let best = decoding.best().expect("a reading");
+    assert!(
+        best.why
+            .iter()
+            .any(|why| why.starts_with("Y5V: another family or characteristic")),
+        "{:?}",
+        best.why
+    );
     let decoding = decode("104J 50V 63V", None);
     let best = decoding.best().expect("a reading");
     assert!(
