@@ -1,5 +1,6 @@
 //! `nulltray decode`: what a marking may mean.
 
+use std::collections::HashMap;
 use std::io::{BufRead, BufReader, BufWriter, Read, Write};
 
 use super::Streams;
@@ -8,7 +9,7 @@ use super::failure::{Failure, Finish};
 use super::harmless::{line, write_json};
 use super::setup::unreadable;
 use super::shapes::DecodingShape;
-use crate::marking::{Decoding, Reading, decode};
+use crate::marking::{Decoding, Reading, Used, decode};
 use crate::quantity::{Farad, Prefix, Quantity, Resolution, engineering_in};
 use crate::tables::Family;
 
@@ -16,6 +17,8 @@ use crate::tables::Family;
 const LONGEST_MARKING: u64 = 4096;
 /// How many further readings are written for people; `--json` has them all.
 const FURTHER_READINGS: usize = 6;
+/// Answers to markings from standard input are kept up to this size, in bytes.
+const KEPT_BYTES: usize = 4 << 20;
 
 /// Runs the command.
 pub(super) fn run(args: &DecodeArgs, streams: &mut Streams<'_>) -> Result<Finish, Failure> {
@@ -105,6 +108,7 @@ fn from_stdin(
     let mut input = BufReader::new(&mut *streams.stdin);
     let mut out = BufWriter::new(&mut *streams.stdout);
     let mut bytes = Vec::new();
+    let mut answers = Answers::default();
     let mut n_lines = 0;
     let mut n_wrong = 0;
     loop {
@@ -134,14 +138,9 @@ fn from_stdin(
         }
         let marking = String::from_utf8_lossy(&bytes);
         let marking = marking.trim_end_matches(['\n', '\r']);
-        let decoding = decode_marking(marking, family);
-        n_wrong += usize::from(decoding.readings.is_empty());
-        if json {
-            write_json(&mut out, &DecodingShape::of(marking, &decoding))?;
-            writeln!(out)?;
-        } else {
-            write_words(&mut out, marking, &decoding)?;
-        }
+        let answer = answers.to(marking, family, json)?;
+        n_wrong += usize::from(answer.is_without_reading);
+        out.write_all(&answer.text)?;
         // Whoever waits for the answer to one line gets it before sending the next.
         if input.buffer().is_empty() {
             out.flush()?;
@@ -151,11 +150,55 @@ fn from_stdin(
     Ok(Finish::after(n_wrong))
 }
 
+/// Answers given so far: lists of parts name the same marking many times. Bounded by their size; when there are more, all
+/// are forgotten and collected afresh.
+#[derive(Default)]
+struct Answers {
+    given: HashMap<String, Answer>,
+    n_bytes: usize,
+}
+
+struct Answer {
+    text: Vec<u8>,
+    is_without_reading: bool,
+}
+
+impl Answers {
+    fn to(
+        &mut self,
+        marking: &str,
+        family: Option<Family>,
+        json: bool,
+    ) -> std::io::Result<&Answer> {
+        if !self.given.contains_key(marking) {
+            let decoding = decode_marking(marking, family);
+            let mut text = Vec::new();
+            if json {
+                write_json(&mut text, &DecodingShape::of(marking, &decoding))?;
+                text.push(b'\n');
+            } else {
+                write_words(&mut text, marking, &decoding)?;
+            }
+            if self.n_bytes > KEPT_BYTES {
+                *self = Self::default();
+            }
+            self.n_bytes += marking.len() + text.len();
+            let answer = Answer {
+                text,
+                is_without_reading: decoding.readings.is_empty(),
+            };
+            self.given.insert(marking.to_owned(), answer);
+        }
+        Ok(&self.given[marking])
+    }
+}
+
 /// Writes a decoding for people.
 fn write_words(out: &mut dyn Write, marking: &str, decoding: &Decoding) -> std::io::Result<()> {
     writeln!(out, "{}", line(marking))?;
     let Some((best, others)) = decoding.readings.split_first() else {
         writeln!(out, "  no reading")?;
+        write_without_value(out, decoding)?;
         return write_list(out, "unexplained", &decoding.unexplained);
     };
     write_reading(out, best)?;
@@ -173,7 +216,27 @@ fn write_words(out: &mut dyn Write, marking: &str, decoding: &Decoding) -> std::
     if n_left_out > 0 {
         writeln!(out, "  and {n_left_out} less plausible")?;
     }
-    Ok(())
+    write_without_value(out, decoding)
+}
+
+/// Writes what the marking is if nothing in it is a value: a date, a lot.
+fn write_without_value(out: &mut dyn Write, decoding: &Decoding) -> std::io::Result<()> {
+    let Some(nothing) = &decoding.without_value else {
+        return Ok(());
+    };
+    writeln!(
+        out,
+        "  or no value at all, {}",
+        percent(nothing.plausibility)
+    )?;
+    write_list(out, "used", &used_in_words(&nothing.used))?;
+    write_list(out, "why", &nothing.why)
+}
+
+fn used_in_words(used: &[Used]) -> Vec<String> {
+    used.iter()
+        .map(|used| format!("`{}` {}", used.text, used.role.word()))
+        .collect()
 }
 
 fn write_reading(out: &mut dyn Write, reading: &Reading) -> std::io::Result<()> {
@@ -215,12 +278,7 @@ fn write_reading(out: &mut dyn Write, reading: &Reading) -> std::io::Result<()> 
         let sections: Vec<String> = sections.iter().map(ToString::to_string).collect();
         item(out, "sections", &sections.join(" + "))?;
     }
-    let used: Vec<String> = reading
-        .used
-        .iter()
-        .map(|used| format!("`{}` {}", used.text, used.role.word()))
-        .collect();
-    write_list(out, "used", &used)?;
+    write_list(out, "used", &used_in_words(&reading.used))?;
     write_list(out, "why", &reading.why)
 }
 

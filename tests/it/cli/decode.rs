@@ -34,6 +34,9 @@ fn decode_for_people() {
 
             X7R
               no reading
+              or no value at all, plausibility 100 %
+                used           `X7R` characteristic
+                why            X7R: characteristic from -55 °C, to +125 °C, ±15 % (EIA-198 class II)
                 unexplained    X7R
             exit 1
         "#]],
