@@ -12,6 +12,8 @@ pub struct ListView {
     pub find: Input,
     /// All rows.
     pub rows: Vec<Row>,
+    /// So many of them, the first ones, answer what is looked for: they come first whatever they say.
+    pub n_answers: usize,
     /// The indices of the rows that match, in the order shown.
     pub order: Vec<usize>,
     /// Which of those shown is selected.
@@ -89,7 +91,10 @@ impl ListView {
     /// Finds and sorts anew.
     pub(super) fn refresh(&mut self, height: usize) {
         let texts: Vec<String> = self.rows.iter().map(Row::text).collect();
-        self.order = search::find(&texts, self.find.value());
+        let (_, searched) = texts.split_at(self.n_answers.min(texts.len()));
+        let found = search::find(searched, self.find.value());
+        let found = found.into_iter().map(|index| index + self.n_answers);
+        self.order = (0..self.n_answers).chain(found).collect();
         if let Some(column) = self.sorted_by {
             let rows = &self.rows;
             self.order.sort_by(|a, b| {
@@ -104,6 +109,13 @@ impl ListView {
             });
         }
         self.move_to(0, height);
+    }
+
+    /// Puts these answers to what is looked for in the place of the last ones.
+    pub(super) fn answer(&mut self, answers: Vec<Row>) {
+        let n_answers = answers.len();
+        self.rows.splice(..self.n_answers, answers);
+        self.n_answers = n_answers;
     }
 
     /// Sorts by the next column, after the last one as they come.

@@ -4,6 +4,7 @@ use super::figures::deviation;
 use super::lists::{ListView, Row};
 use super::lot::{Share, in_tolerances};
 use super::{Entry, RecordKind, State, Units};
+use crate::marking::{Role, decode};
 
 /// Rows of what was sorted, the latest first.
 pub(super) fn tray(state: &State, entries: &[Entry]) -> ListView {
@@ -79,6 +80,29 @@ pub(super) fn codes(state: &State) -> ListView {
         ..Row::of(vec![code.table.clone(), code.text.clone()])
     });
     ListView::new(vec!["table", "what it says"], rows.collect())
+}
+
+/// What a text means as a marking: the reasons of the most plausible of its readings, or of what it is without a value.
+pub(super) fn as_marking(text: &str) -> Vec<Row> {
+    if text.trim().is_empty() {
+        return Vec::new();
+    }
+    let decoding = decode(text, None);
+    let best = decoding.best();
+    let nothing = decoding.without_value.as_ref();
+    let nothing = nothing.filter(|n| best.is_none_or(|best| best.plausibility < n.plausibility));
+    let (why, used) = match (nothing, best) {
+        (Some(nothing), _) => (&nothing.why, &nothing.used),
+        (None, Some(best)) => (&best.why, &best.used),
+        (None, None) => return Vec::new(),
+    };
+    // A text that says nothing of a part is a word to be looked up, not a marking.
+    if used.iter().all(|used| used.role == Role::Text) {
+        return Vec::new();
+    }
+    why.iter()
+        .map(|why| Row::of(vec!["as a marking".to_owned(), why.clone()]))
+        .collect()
 }
 
 /// Rows of the lot: what it yields, its histogram, then its parts.
@@ -199,5 +223,24 @@ mod tests {
                 "above +2: 1"
             ]
         );
+    }
+
+    #[test]
+    fn a_code_is_answered_with_what_it_means() {
+        let answer = |text: &str| -> Vec<String> {
+            as_marking(text)
+                .iter()
+                .filter_map(|row| row.cells.get(1).cloned())
+                .collect()
+        };
+        let said = answer("X7R").join("; ");
+        assert!(said.contains("-55 °C") && said.contains("±15 %"), "{said}");
+        assert!(answer("2E").join("; ").contains("rated voltage"));
+        assert_eq!(
+            answer("tolerance"),
+            [""; 0],
+            "a word to be looked up is no marking"
+        );
+        assert_eq!(answer("  "), [""; 0]);
     }
 }

@@ -179,7 +179,7 @@ fn press(state: &mut State, key: Key) -> Vec<Effect> {
             .handle(request)
             .is_some_and(|changed| changed.value);
         if changed {
-            list.refresh(height);
+            look_up(&mut state.front, height);
         }
         false
     } else if matches!(state.front, Front::NewMeter) {
@@ -257,6 +257,16 @@ fn act(state: &mut State, intent: Intent) -> Vec<Effect> {
     Vec::new()
 }
 
+/// Finds anew what is looked for; the codes answer first what it means as a marking.
+fn look_up(front: &mut Front, height: usize) {
+    if let Front::Codes(list) = front {
+        list.answer(pages::as_marking(list.find.value()));
+    }
+    if let Some(list) = front.list_mut() {
+        list.refresh(height);
+    }
+}
+
 fn page_of(state: &State) -> isize {
     isize::try_from(list_height(state.front.page(), state.size)).unwrap_or(1)
 }
@@ -273,7 +283,7 @@ fn clear_or_leave(state: &mut State) {
     let is_empty = if let Some(list) = state.front.list_mut() {
         let is_empty = list.find.value().is_empty();
         list.find.reset();
-        list.refresh(height);
+        look_up(&mut state.front, height);
         is_empty
     } else if matches!(state.front, Front::NewMeter) {
         let is_empty = state.interview.input.value().is_empty();

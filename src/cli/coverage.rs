@@ -12,6 +12,8 @@ use super::shapes_meter::CoverageShape;
 use crate::meter::{Coverage, Meter, coverage};
 use crate::quantity::Fraction;
 
+/// Every so many values of a span are listed.
+const VALUES_BETWEEN: usize = 20;
 /// The limit where none is given.
 const USUAL_LIMIT: f64 = 0.05;
 
@@ -79,6 +81,33 @@ fn write_words(
             }),
         ]
     }));
+    write_aligned(out, &rows)?;
+    writeln!(out, "\nalong each span")?;
+    let mut rows = vec![
+        [
+            "switch",
+            "value",
+            "nulls at",
+            "one reading",
+            "both edges",
+            "on the part",
+        ]
+        .map(str::to_owned),
+    ];
+    for switch in &found.switches {
+        rows.extend(switch.values.iter().step_by(VALUES_BETWEEN).map(|value| {
+            let percent =
+                |u: Option<Fraction>| u.map_or("-".to_owned(), |u| format!("{:.2} %", u.percent()));
+            [
+                line(meter.label(switch.switch)).into_owned(),
+                value.capacitance.to_string(),
+                meter.dial.show(value.balance),
+                percent(value.one_reading),
+                percent(value.both_edges),
+                format!("{:.1} V", value.part_voltage.get()),
+            ]
+        }));
+    }
     write_aligned(out, &rows)?;
     if let Some(best) = found.changes.first() {
         writeln!(

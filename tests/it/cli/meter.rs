@@ -174,6 +174,37 @@ fn coverage_for_people_and_scripts() {
         B       915 pF to 180 nF    17.7 nF to 180 nF   0.52 %  -
         C       149 pF to 29.3 nF   2.88 nF to 29.3 nF  0.55 %  -
         D       24.3 pF to 4.77 nF  474 pF to 4.77 nF   0.55 %  -
+
+        along each span
+        switch  value    nulls at  one reading  both edges  on the part
+        A       5.5 nF   0.1       161.03 %     -           4.2 V
+        A       13.3 nF  0.8       33.31 %      23.56 %     4.2 V
+        A       32 nF    2.5       13.82 %      9.78 %      4.2 V
+        A       77.1 nF  6.8       5.75 %       4.08 %      4.2 V
+        A       186 nF   16.9      2.46 %       1.77 %      4.0 V
+        A       448 nF   41.1      1.10 %       0.84 %      3.2 V
+        A       1.08 µF  100.0     1.01 %       -           1.9 V
+        B       915 pF   0.1       161.02 %     -           4.2 V
+        B       2.21 nF  0.8       33.31 %      23.55 %     4.2 V
+        B       5.32 nF  2.6       13.82 %      9.78 %      4.2 V
+        B       12.8 nF  6.8       5.75 %       4.07 %      4.2 V
+        B       30.9 nF  16.9      2.45 %       1.76 %      4.0 V
+        B       74.6 nF  41.1      1.09 %       0.83 %      3.2 V
+        B       180 nF   100.0     0.99 %       -           1.9 V
+        C       149 pF   0.1       161.03 %     -           4.2 V
+        C       359 pF   0.8       33.32 %      23.56 %     4.2 V
+        C       866 pF   2.6       13.82 %      9.78 %      4.2 V
+        C       2.09 nF  6.8       5.75 %       4.08 %      4.2 V
+        C       5.04 nF  17.0      2.46 %       1.77 %      4.0 V
+        C       12.1 nF  41.2      1.10 %       0.85 %      3.2 V
+        C       29.3 nF  100.0     1.01 %       -           1.9 V
+        D       24.3 pF  0.3       161.28 %     -           4.2 V
+        D       58.5 pF  1.1       33.53 %      23.87 %     4.2 V
+        D       141 pF   2.8       13.91 %      9.91 %      4.2 V
+        D       340 pF   7.1       5.78 %       4.13 %      4.2 V
+        D       820 pF   17.2      2.47 %       1.79 %      4.0 V
+        D       1.98 nF  41.4      1.10 %       0.85 %      3.2 V
+        D       4.77 nF  100.0     1.01 %       -           1.9 V
         what would better it most: a larger dial, set and read twice as finely, 42 % less uncertainty
         exit 0
     "#]].assert_eq(&run(
