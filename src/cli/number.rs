@@ -30,9 +30,27 @@ pub(super) fn append(value: f64, to: &mut Vec<u8>) {
     }
 }
 
-/// Returns the number rounded to twelve significant digits.
+/// Returns the number rounded to twelve significant digits: twelve figures over or times an exact power of ten, which is
+/// the nearest double to the decimal; beyond the exact powers the long way round.
 pub(super) fn rounded(value: f64) -> f64 {
-    format!("{value:.11e}").parse().unwrap_or(value)
+    let magnitude = value.abs();
+    if !(1e-6..1e15).contains(&magnitude) {
+        return format!("{value:.11e}").parse().unwrap_or(value);
+    }
+    let power = DIGITS - 1 - floor_log10(magnitude);
+    let figures = scaled(magnitude, power);
+    let at = |n: i32| {
+        usize::try_from(n)
+            .ok()
+            .and_then(|n| POWERS.get(n).copied())
+            .unwrap_or(1.0)
+    };
+    let nearest = if power >= 0 {
+        figures / at(power)
+    } else {
+        figures * at(-power)
+    };
+    nearest.copysign(value)
 }
 
 /// One product or quotient with an exact power of ten: off by less than 2e-16 relative, so that only ties in the thirteenth
@@ -154,6 +172,9 @@ mod tests {
             let back: f64 = String::from_utf8_lossy(&text).parse().expect("a number");
             prop_assert!((back - value).abs() <= 5.1e-12 * value.abs(), "{value:e} became {back:e}");
             prop_assert!((rounded(value) - value).abs() <= 5.1e-12 * value.abs());
+            let figures = format!("{:e}", rounded(value));
+            let n_figures = figures.split('e').next().map_or(0, |m| m.bytes().filter(u8::is_ascii_digit).count());
+            prop_assert!(n_figures <= 12, "{value:e} has too many figures: {figures}");
         }
     }
 }
