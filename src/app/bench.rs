@@ -4,7 +4,7 @@ use super::cautions::SAME_SIDE;
 use super::describing;
 use super::earlier::add;
 use super::entry::{self, Prompt, Typed};
-use super::expecting::{choose_reading, choose_switch, refresh};
+use super::expecting::{choose_reading, choose_switch, parked_place, refresh};
 use super::sighting::Sighting;
 use super::state::{Effect, Last, Notice, Pending, Purpose, Question, Shown, State, Tone, Warning};
 use super::work::{Judgement, Subject, Work};
@@ -19,7 +19,7 @@ pub(super) fn submit(state: &mut State) -> Vec<Effect> {
     }
     state.notice = None;
     let text = state.bench.line().value().to_owned();
-    let parked = state.bench.prediction.as_ref().and_then(|p| p.expected);
+    let parked = parked_place(state);
     let typed = match entry::read(&text, state.bench.prompt, &state.setup.meter.dial, parked) {
         Ok(typed) => typed,
         Err(refusal) => return refuse(state, refusal.to_string()),

@@ -6,11 +6,11 @@ use super::rim::rim;
 use super::sighting::read_sighting;
 use super::state::{Effect, Park, State};
 use super::work::{Subject, known_part, place_of};
-use super::{Circumstances, Marked, assess, predict_marked};
-use crate::finding::Word;
+use super::{Marked, predict_marked};
+use crate::finding;
 use crate::marking::{Decoding, decode};
-use crate::meter::{DialReading, Lamp, Seen, Switch, Value, best_switch, predict};
-use crate::quantity::{Farad, Fraction};
+use crate::meter::{DialReading, Switch, best_switch, predict};
+use crate::quantity::Farad;
 
 /// Works out anew what follows from what is typed: readings, switch, expected place, capacitances around the rim.
 pub(super) fn refresh(state: &mut State) {
@@ -75,14 +75,15 @@ fn refresh_marked(state: &mut State, typed: &str) {
 
 /// Marks on the dial what is typed so far.
 pub(super) fn refresh_mark(state: &mut State) {
+    let parked = parked_place(state);
     let bench = &mut state.bench;
-    let parked = bench.prediction.as_ref().and_then(|p| p.expected);
     let line = bench.dial.value();
     let sighting = read_sighting(line, &state.setup.meter.dial, parked);
     bench.mark = sighting.ok().and_then(|sighting| place_of(sighting.seen));
 }
 
-/// For a part with the same marking as the last one: where to park the dial, and what a dark lamp settles there.
+/// For a part with the same marking as the last one: the best place to park the dial on the switch in use, and what share
+/// of good parts the lamp settles there; where it settles none, the expected place.
 fn park(state: &State) -> Option<Park> {
     let bench = &state.bench;
     let marked = bench.marked()?;
@@ -90,49 +91,31 @@ fn park(state: &State) -> Option<Park> {
     if !same || bench.correcting.is_some() {
         return None;
     }
-    let at = bench.prediction.as_ref()?.expected?;
-    Some(Park {
-        at,
-        settles: settled_share(state, marked, at),
-    })
+    let switch = bench.switch_in_use()?;
+    let best = finding::park(
+        &state.setup.meter,
+        switch,
+        marked.reading()?,
+        &state.setup.rules(),
+    );
+    match best.filter(|parking| parking.settled.get() > 0.0) {
+        Some(parking) => Some(Park {
+            at: parking.window.at,
+            settles: Some(parking.settled),
+        }),
+        None => Some(Park {
+            at: bench.prediction.as_ref()?.expected?,
+            settles: None,
+        }),
+    }
 }
 
-/// Returns the share of good parts that a dark lamp settles at the parked place: those between the two values at which the
-/// lamp changes there, if a dark lamp means inside at all. Good parts are taken as normally spread about nominal, the
-/// tolerance being two standard deviations.
-fn settled_share(state: &State, marked: &Marked, at: DialReading) -> Option<Fraction> {
-    let reading = marked.reading()?;
-    let switch = state.bench.switch_in_use()?;
-    let seen = Seen::Parked {
-        at,
-        lamp: Lamp::Dark,
-    };
-    let dark = assess(
-        &state.setup,
-        marked,
-        switch,
-        seen,
-        &Circumstances::default(),
-    );
-    let limits = dark.verdict.limits?;
-    let Value::Window { low, high, .. } = dark.measured.value else {
-        return None;
-    };
-    if dark.verdict.word != Word::Inside {
-        return None;
-    }
-    let (made_low, made_high) = limits.made_to.limits(reading.capacitance);
-    let made_high = made_high?;
-    let middle = (made_low + made_high) * 0.5;
-    let spread = (made_high - made_low).get() / 4.0;
-    let below =
-        |c: Farad| 0.5 * libm::erfc((middle - c).get() / (spread * std::f64::consts::SQRT_2));
-    let dark_below = high.map_or(1.0, |high| below(high.value));
-    let good = below(limits.high.unwrap_or(made_high)) - below(limits.low);
-    let share = (dark_below - below(low.value)) / good;
-    share
-        .is_finite()
-        .then(|| Fraction::new(share.clamp(0.0, 1.0)))
+/// Returns where the dial is taken to be parked when only a lamp is entered: where the screen says, else where the part is
+/// expected.
+pub fn parked_place(state: &State) -> Option<DialReading> {
+    let bench = &state.bench;
+    let expected = bench.prediction.as_ref().and_then(|p| p.expected);
+    bench.park.map(|park| park.at).or(expected)
 }
 
 /// Takes another switch; the reading asked about is then another one.

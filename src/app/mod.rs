@@ -39,6 +39,7 @@ pub use check_rows::Chart;
 pub use checks::{Checked, Checks, Series, SeriesKey, day_and_time};
 pub use describing::is_at_the_end;
 pub use entry::{Addition, Prompt, Typed, read as read_entry};
+pub use expecting::parked_place;
 pub use figures::{deviation, probability, uncertain};
 pub use keys::{Binding, Intent, Key, Page};
 pub use lists::{ListView, Row};

@@ -8,7 +8,7 @@ use std::io::{self, BufRead, Write};
 
 use crate::app::{
     Event, Front, MeterFrom, Prompt, Shown, State, Subject, Units, cautions, deviation,
-    is_at_the_end, limits_in_force, probability, went_to,
+    is_at_the_end, limits_in_force, parked_place, probability, went_to,
 };
 use crate::marking::Reading;
 use crate::meter::Switch;
@@ -100,8 +100,8 @@ fn prompt(state: &State) -> String {
     let switch = bench
         .switch_in_use()
         .map_or("", |switch| meter.label(switch));
-    let expected = bench.prediction.as_ref().and_then(|p| p.expected);
-    match expected {
+    // The place at which `d` and `l` take the dial to be parked.
+    match parked_place(state) {
         Some(place) => format!("dial {switch} {}>", meter.dial.show(place)),
         None => format!("dial {switch}>"),
     }
