@@ -1,5 +1,8 @@
 //! From what is typed to an answer as the profile writes it: units as people write them, a point for a comma.
 
+use std::ffi::OsStr;
+use std::path::Path;
+
 use super::questions::{Accepts, Question, Unit};
 use crate::quantity::{
     Farad, Fraction, Hertz, Ohm, Prefix, Quantity, Refusal, Resolution, Volt, engineering,
@@ -80,7 +83,9 @@ pub(super) fn read(question: &'static Question, text: &str) -> Result<String, Re
         } else {
             "no".to_owned()
         }),
-        Accepts::Path | Accepts::Points if body.is_empty() => Err(refused()),
+        // A number typed by habit is no place for a profile.
+        Accepts::Path if Path::new(body).extension() != Some(OsStr::new("toml")) => Err(refused()),
+        Accepts::Points if body.is_empty() => Err(refused()),
         Accepts::Path | Accepts::Points => Ok(body.to_owned()),
     }
 }
@@ -135,7 +140,7 @@ pub(super) fn accepted(question: &Question) -> String {
         Accepts::Points => {
             "a dial number, a blank and the resistance there, as in 50 2.37 kΩ".to_owned()
         }
-        Accepts::Path => "the path of a file".to_owned(),
+        Accepts::Path => "the path of a file that ends in .toml".to_owned(),
         Accepts::Yes => "yes; anything else asks for another place".to_owned(),
     }
 }

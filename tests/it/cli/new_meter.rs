@@ -133,10 +133,10 @@ fn a_file_that_is_there_is_written_over_only_after_a_yes() {
     let output = line(&folder, &typed);
     assert!(output.contains("DIR/m.toml is there already"), "{output}");
     assert_eq!(fs::read_to_string(&place).expect("there"), "old");
-    let typed = format!("new meter\n{enters}{place}/x\n{place}\nyes\n");
+    let typed = format!("new meter\n{enters}{place}/x.toml\n{place}\nyes\n");
     let output = line(&folder, &typed);
     assert!(
-        output.contains("not written: cannot write DIR/m.toml/x: Not a directory; "),
+        output.contains("not written: cannot write DIR/m.toml/x.toml: Not a directory; "),
         "{output}"
     );
     assert!(
