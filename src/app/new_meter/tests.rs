@@ -20,12 +20,11 @@ fn refused(interview: &mut Interview, line: &str) -> String {
 
 /// Answers all questions from here on with their defaults; returns the text.
 fn finished(mut interview: Interview) -> String {
-    for _ in 0..60 {
-        if let Ok(Answered::Write(draft)) = interview.take("") {
-            return draft.text;
-        }
-    }
-    panic!("no end at {:?}", interview.at);
+    let end = (0..60).find_map(|_| match interview.take("") {
+        Ok(Answered::Write(draft)) => Some(draft.text),
+        _ => None,
+    });
+    end.expect("the questions come to an end")
 }
 
 #[test]
